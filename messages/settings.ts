@@ -1,0 +1,54 @@
+/**
+ * The agent's own settings: one table, from which come the mission's `onboard` section (numbers with
+ * the unit in the name) and the trial's (quantities with units). Nothing else has defaults for them.
+ */
+import { z } from 'zod';
+
+/** Unit of a setting, as its suffix in messages. */
+export type SettingUnit = 's' | 'm' | 'mps' | 'deg' | 'share' | 'count';
+
+export interface Setting {
+  readonly unit: SettingUnit;
+  readonly default: number;
+  readonly min: number;
+  readonly max: number;
+  readonly says: string;
+}
+
+export const SETTINGS = {
+  lookAhead: { unit: 's', default: 40, min: 1, max: 600, says: 'time in which a cross-track error is steered out' },
+} as const satisfies Record<string, Setting>;
+
+export type SettingKey = keyof typeof SETTINGS;
+
+type Suffixed<K extends SettingKey> = (typeof SETTINGS)[K]['unit'] extends 'share' | 'count'
+  ? K
+  : `${K}_${(typeof SETTINGS)[K]['unit']}`;
+
+/** Settings as the core reads them: `lookAhead_s`, …; shares and counts carry no suffix. */
+export type Settings = { readonly [K in SettingKey as Suffixed<K>]: number };
+
+/** The message name of a setting. */
+export function settingName(key: SettingKey): string {
+  const unit: SettingUnit = SETTINGS[key].unit;
+  return unit === 'share' || unit === 'count' ? key : `${key}_${unit}`;
+}
+
+const shape: Record<string, z.ZodType<number>> = {};
+for (const key of Object.keys(SETTINGS) as SettingKey[]) {
+  const { min, max, says, unit }: Setting = SETTINGS[key];
+  const number = unit === 'count' ? z.int() : z.number();
+  shape[settingName(key)] = number.min(min).max(max).describe(says);
+}
+
+/** The `onboard` section of the mission message; every setting is present. */
+export const settingsSchema = z.strictObject(shape) as unknown as z.ZodType<Settings>;
+
+/** Every setting at its default. */
+export function defaultSettings(): Settings {
+  const values: Record<string, number> = {};
+  for (const key of Object.keys(SETTINGS) as SettingKey[]) {
+    values[settingName(key)] = SETTINGS[key].default;
+  }
+  return values as Settings;
+}
