@@ -28,15 +28,19 @@ type Suffixed<K extends SettingKey> = (typeof SETTINGS)[K]['unit'] extends 'shar
 /** Settings as the core reads them: `lookAhead_s`, …; shares and counts carry no suffix. */
 export type Settings = { readonly [K in SettingKey as Suffixed<K>]: number };
 
+function settingOf(key: SettingKey): Setting {
+  return SETTINGS[key];
+}
+
 /** The message name of a setting. */
 export function settingName(key: SettingKey): string {
-  const unit: SettingUnit = SETTINGS[key].unit;
+  const { unit } = settingOf(key);
   return unit === 'share' || unit === 'count' ? key : `${key}_${unit}`;
 }
 
 const shape: Record<string, z.ZodType<number>> = {};
 for (const key of Object.keys(SETTINGS) as SettingKey[]) {
-  const { min, max, says, unit }: Setting = SETTINGS[key];
+  const { min, max, says, unit } = settingOf(key);
   const number = unit === 'count' ? z.int() : z.number();
   shape[settingName(key)] = number.min(min).max(max).describe(says);
 }

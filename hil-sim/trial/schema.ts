@@ -17,7 +17,6 @@ const positiveLength = quantity('length', { above: 0, max: 1e6 });
 const speed = quantity('speed', { min: 0, max: 50 });
 const positiveSpeed = quantity('speed', { above: 0, max: 50 });
 const angle = quantity('angle', { min: -2 * Math.PI, max: 2 * Math.PI });
-const time = quantity('time', { min: 0, max: 1e7 });
 const positiveTime = quantity('time', { above: 0, max: 1e7 });
 const share = quantity('share', { min: 0, max: 1 });
 const power = quantity('power', { min: 0, max: 1e5 });

@@ -1,0 +1,16 @@
+/** One tick as the bench sees it: what was perceived, what was answered, and the truth of that tick. */
+import type { Sense } from '../../messages/sense.ts';
+import type { Steer } from '../../messages/steer.ts';
+import type { Hearing, Truth } from '../sea/sea.ts';
+
+/** Valid only until the next tick: the truth's arrays are the sea's own. */
+export interface TickRecord {
+  readonly tick: number;
+  /** True time of the tick, seconds from the trial's start. */
+  readonly timeS: number;
+  readonly truth: Truth;
+  readonly senses: readonly Sense[];
+  readonly steers: readonly Steer[];
+  /** Hearings that ended in this tick. */
+  readonly hearings: readonly Hearing[];
+}
