@@ -37,6 +37,10 @@ export const HAVES_PER_FRAME = 5;
 export const NOTE_NUMBER_MAX = 1023;
 export const NOTE_SKIPPED_MAX = 7;
 
+/** The agent's states, in the order of their codes on the link. */
+export const AGENT_STATES = ['waiting', 'joining', 'holding', 'homing', 'surfacing'] as const;
+export type AgentState = (typeof AGENT_STATES)[number];
+
 const MAP_POSITION: FixedPoint = { width: 13, step: 1, signed: true };
 const PHASE_CODES = 4096;
 const END_TIME: FixedPoint = { width: 17, step: 1, signed: false };
@@ -248,10 +252,6 @@ export function decodeFrame(bytes: Uint8Array): FrameReading {
   };
   return { ok: true, frame };
 }
-
-/** The agent's states, in the order of their codes on the link. */
-export const AGENT_STATES = ['waiting', 'joining', 'holding', 'homing', 'surfacing'] as const;
-export type AgentState = (typeof AGENT_STATES)[number];
 
 const HEX = '0123456789abcdef';
 
