@@ -17,6 +17,9 @@ export interface Setting {
 
 export const SETTINGS = {
   lookAhead: { unit: 's', default: 40, min: 1, max: 600, says: 'time in which a cross-track error is steered out' },
+  // What the agent calls stale or uncertain, in frames and to its own steering.
+  mapStale: { unit: 'mps', default: 0.15, min: 0.01, max: 2, says: 'stated sd of the current at the own place above which the map counts as stale' },
+  positionUncertain: { unit: 'm', default: 40, min: 1, max: 1000, says: 'stated sd of the own position above which it counts as uncertain' },
 } as const satisfies Record<string, Setting>;
 
 export type SettingKey = keyof typeof SETTINGS;

@@ -15,7 +15,7 @@ export const REASONS = [
 
 /** What became of a frame that was heard: used, or why it was refused. */
 export const HEARD_FATES = [
-  'used', 'length', 'check', 'version', 'content', 'sender', 'own', 'repeat', 'late',
+  'used', 'length', 'check', 'version', 'content', 'sender', 'own', 'repeat', 'time',
 ] as const;
 
 const variance = z.number().min(0).max(1e12);

@@ -1,20 +1,169 @@
-/** The agent, whole. */
+/**
+ * The agent, whole: one sense in, one steer out, in the order of its parts. Heard frames first, then
+ * dead reckoning and the fix, then the map's share of work, then what follows from the picture: the
+ * current here and along the loop, the way to go, and what to say.
+ *
+ * Given the same mission and the same senses, the steers are the same to the last bit. Nothing here
+ * reads a clock, draws a number, waits, or throws for what the sea may send.
+ */
+import { degFromRad, headingDegFromRad, radFromDeg } from '../../messages/angles.ts';
+import { AGENT_STATES, encodeFrame, hexFromBytes } from '../../messages/frame.ts';
 import type { Sense } from '../../messages/sense.ts';
-import type { Steer } from '../../messages/steer.ts';
-import type { State } from './state.ts';
+import type { Estimate, HeardFate, MapMessage, Steer } from '../../messages/steer.ts';
+import { biasNow, currentAt, currentMeanAt, positionNow, reckonTick, takeNote, workEstimator } from './estimator.ts';
+import { guide, hearPeer, isBatteryLow } from './guidance.ts';
+import { noteCount } from './note-log.ts';
+import { chooseNote, hearHaves, ownHaves } from './share-notes.ts';
+import { MAP_POINTS, type State } from './state.ts';
+import { frameTime, isTimeToSay, nextSequence, readHeard } from './talk.ts';
+
+const MINUTE_S = 60;
+/** One point of the loop has its uncertainty renewed every so many ticks, the own place at every so many. */
+const SIGMA_POINT_TICKS = 2;
+const SIGMA_HERE_TICKS = 10;
 
 /** Answers one sense. */
 export function step(state: State, sense: Sense): Steer {
-  const { self } = state.mission;
+  const heard = hearFrames(state, sense);
+  reckon(state, sense);
+  workEstimator(state.estimator);
+  const minute = isWholeMinute(state, sense.tick);
+  renewPicture(state, sense, minute);
+  steerTheVehicle(state, sense);
+  const out = state.guidanceOut;
   return {
-    tick: sense.tick, heading_deg: sense.heading_deg, speed_mps: self.cruise_mps, depth_m: state.mission.depth_m,
-    say: null, state: 'waiting', reasons: ['start'], heard: sense.heard.map(() => 'used' as const),
-    estimate: {
-      east_m: self.start.east_m, north_m: self.start.north_m, varEast_m2: 25, covEastNorth_m2: 0, varNorth_m2: 25,
-      currentEast_mps: 0, currentNorth_mps: 0, varCurrentEast_m2ps2: 0.04, covCurrentEastNorth_m2ps2: 0,
-      varCurrentNorth_m2ps2: 0.04, phase: 0, compassBias_deg: 0, compassBiasSigma_deg: 1, logScale: 0,
-      logScaleSigma: 0.01, notesHeld: 0,
-    },
-    map: null,
+    tick: sense.tick,
+    heading_deg: headingDegFromRad(out.headingRad),
+    speed_mps: out.speedMps,
+    depth_m: out.depthM,
+    say: isTimeToSay(state.talk, sense.at_s, state.mission.tick_s) ? say(state, sense.at_s) : null,
+    state: out.state,
+    reasons: out.reasons.slice(),
+    heard,
+    estimate: estimateOf(state),
+    map: minute ? mapOf(state) : null,
+  };
+}
+
+function hearFrames(state: State, sense: Sense): HeardFate[] {
+  const fates: HeardFate[] = [];
+  for (const heard of sense.heard) {
+    const reading = readHeard(state.talk, heard);
+    fates.push(reading.fate);
+    if (reading.fate !== 'used') continue;
+    hearPeer(state.guidance, reading.frame, heard.at_s);
+    if (state.mission.sharing === 'solo') continue;
+    hearHaves(state.sharing, state.estimator.log, reading);
+    if (reading.frame.note !== null) takeNote(state.estimator, reading.frame.note);
+  }
+  return fates;
+}
+
+function reckon(state: State, sense: Sense): void {
+  const { fix } = sense;
+  reckonTick(state.estimator, {
+    atS: sense.at_s,
+    headingRad: radFromDeg(sense.heading_deg),
+    speedMps: sense.speed_mps,
+    fix: fix === null ? null : { atS: fix.at_s, eastM: fix.east_m, northM: fix.north_m, sigmaM: fix.sigma_m },
+  });
+}
+
+function isWholeMinute(state: State, tick: number): boolean {
+  return (tick * state.mission.tick_s) % MINUTE_S === 0;
+}
+
+/** Position, biases, the current here each tick; the current along the loop each minute. */
+function renewPicture(state: State, sense: Sense, minute: boolean): void {
+  const { estimator, position, table, here, meanHere } = state;
+  positionNow(estimator, position);
+  biasNow(estimator, state.bias);
+  currentMeanAt(estimator, position.eastM, position.northM, sense.at_s, meanHere);
+  if (sense.tick % SIGMA_POINT_TICKS === 0) {
+    const point = (sense.tick / SIGMA_POINT_TICKS) % MAP_POINTS;
+    currentAt(estimator, table.pointEastM[point]!, table.pointNorthM[point]!, sense.at_s, state.there);
+    table.sigmaMps[point] = Math.sqrt(state.there.varEastM2ps2 + state.there.varNorthM2ps2);
+  }
+  if (sense.tick % SIGMA_HERE_TICKS === 0) {
+    currentAt(estimator, position.eastM, position.northM, sense.at_s, here);
+  }
+  if (!minute) return;
+  const mean = state.meanPoint;
+  for (let point = 0; point < MAP_POINTS; point++) {
+    currentMeanAt(estimator, table.pointEastM[point]!, table.pointNorthM[point]!, sense.at_s, mean);
+    table.currentEastMps[point] = mean[0]!;
+    table.currentNorthMps[point] = mean[1]!;
+  }
+}
+
+function steerTheVehicle(state: State, sense: Sense): void {
+  const { guidanceIn: input, position, here, bias, mission } = state;
+  input.atS = sense.at_s;
+  input.eastM = position.eastM;
+  input.northM = position.northM;
+  input.depthM = sense.depth_m;
+  input.positionSigmaM = Math.sqrt(position.varEastM2 + position.varNorthM2);
+  input.compassBiasRad = bias.compassBiasRad;
+  input.logScale = bias.logScale;
+  input.headingRad = radFromDeg(sense.heading_deg);
+  input.speedMps = sense.speed_mps;
+  input.battery = sense.battery;
+  input.currentEastMps = state.meanHere[0]!;
+  input.currentNorthMps = state.meanHere[1]!;
+  input.currentSigmaMps = Math.sqrt(here.varEastM2ps2 + here.varNorthM2ps2);
+  input.mapStale = !(input.currentSigmaMps <= mission.onboard.mapStale_mps);
+  input.orders = sense.orders;
+  guide(state.guidance, input, state.guidanceOut);
+}
+
+/** The frame for the coming slot, as hex. */
+function say(state: State, atS: number): string {
+  const { talk, sharing, estimator, position, guidanceIn, guidanceOut, mission } = state;
+  const sequence = nextSequence(talk);
+  const alone = mission.sharing === 'solo';
+  return hexFromBytes(encodeFrame({
+    senderIndex: state.selfIndex,
+    sequence,
+    timeMod4096S: frameTime(atS),
+    eastM: position.eastM,
+    northM: position.northM,
+    phase: guidanceOut.phase,
+    stateIndex: AGENT_STATES.indexOf(guidanceOut.state),
+    positionUncertain: guidanceIn.positionSigmaM > mission.onboard.positionUncertain_m,
+    mapStale: guidanceIn.mapStale,
+    batteryLow: isBatteryLow(state.guidance),
+    note: alone ? null : chooseNote(sharing, estimator.log),
+    haves: alone ? [0, 0, 0, 0, 0] : ownHaves(sharing, estimator.log, sequence),
+  }));
+}
+
+function estimateOf(state: State): Estimate {
+  const { position, here, meanHere, bias } = state;
+  return {
+    east_m: position.eastM,
+    north_m: position.northM,
+    varEast_m2: position.varEastM2,
+    covEastNorth_m2: position.covEastNorthM2,
+    varNorth_m2: position.varNorthM2,
+    currentEast_mps: meanHere[0]!,
+    currentNorth_mps: meanHere[1]!,
+    varCurrentEast_m2ps2: here.varEastM2ps2,
+    covCurrentEastNorth_m2ps2: here.covEastNorthM2ps2,
+    varCurrentNorth_m2ps2: here.varNorthM2ps2,
+    phase: state.guidanceOut.phase,
+    compassBias_deg: degFromRad(bias.compassBiasRad),
+    compassBiasSigma_deg: degFromRad(bias.compassBiasSigmaRad),
+    logScale: bias.logScale,
+    logScaleSigma: bias.logScaleSigma,
+    notesHeld: noteCount(state.estimator.log),
+  };
+}
+
+function mapOf(state: State): MapMessage {
+  const { table } = state;
+  return {
+    east_mps: Array.from(table.currentEastMps),
+    north_mps: Array.from(table.currentNorthMps),
+    sigma_mps: Array.from(table.sigmaMps),
   };
 }
