@@ -85,5 +85,5 @@ export function nextSequence(talk: Talk): number {
 /** A time as a frame says it. */
 export function frameTime(atS: number): number {
   const whole = Math.round(atS) % TIME_MODULUS_S;
-  return whole < 0 ? whole + TIME_MODULUS_S : whole;
+  return whole < 0 ? whole + TIME_MODULUS_S : whole + 0;
 }
