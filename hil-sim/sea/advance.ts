@@ -1,0 +1,153 @@
+/**
+ * The sea, whole: one tick of truth, in order. `perceive` reads the sensors of tick n; `advance` takes
+ * the steers of tick n, ends the hearings they judge, sends what is due, moves every body to n + 1 and
+ * collects the frames whose last bit arrived by then.
+ *
+ * A pure function of plan and steers: every draw is by count, every order is fixed, time is the tick
+ * number times its length. The agents' mathematics stands elsewhere, and none of it is used here.
+ */
+import { assert } from '../../messages/assert.ts';
+import type { HeardFrame, Sense } from '../../messages/sense.ts';
+import type { Steer } from '../../messages/steer.ts';
+import { moveBody } from './body.ts';
+import { startDraw, type Draw } from './draw.ts';
+import { endArrivals, sendFrames, startModem, type Delivery, type ModemState } from './modem.ts';
+import type { SeaPlan } from './plan.ts';
+import type { Hearing, Sea, Truth } from './sea.ts';
+import { drawBiases, onboardTimeS, readCompassAndLog, readFix, startFixes, type FixState } from './sensors.ts';
+import { soundSpeedMps } from './sound.ts';
+import { currentAt } from './water.ts';
+
+/** Depth at which the sound speed is taken: half of the water, 100 m at most. */
+const SOUND_DEPTH_MAX_M = 100;
+
+interface State {
+  readonly plan: SeaPlan;
+  readonly draw: Draw;
+  readonly truth: Truth;
+  readonly fixes: FixState;
+  readonly modem: ModemState;
+  readonly scratch: Float64Array;
+  readonly counts: { tick: number };
+  /** Frames that the senses of the current tick hold. */
+  deliveries: Delivery[];
+  hearings: Hearing[];
+  senses: Sense[] | null;
+}
+
+function startTruth(plan: SeaPlan, draw: Draw): Truth {
+  const column = (of: (index: number) => number): Float64Array =>
+    Float64Array.from(plan.vehicles, (_vehicle, index) => of(index));
+  const biases = plan.vehicles.map((vehicle, index) => drawBiases(draw, vehicle, index));
+  return {
+    eastM: column((index) => plan.vehicles[index]!.startEastM),
+    northM: column((index) => plan.vehicles[index]!.startNorthM),
+    depthM: column((index) => plan.vehicles[index]!.startDepthM),
+    headingRad: column((index) => plan.vehicles[index]!.startHeadingRad),
+    speedMps: column(() => 0),
+    currentEastMps: column(() => 0),
+    currentNorthMps: column(() => 0),
+    battery: column(() => 1),
+    energyJ: column(() => 0),
+    compassBiasRad: column((index) => biases[index]!.biasRad),
+    logScale: column((index) => biases[index]!.scale),
+  };
+}
+
+/** A sea at tick 0. */
+export function startSea(plan: SeaPlan): Sea {
+  const draw = startDraw(plan.seed);
+  const { temperatureDegC, salinityPsu, depthM } = plan.water;
+  const state: State = {
+    plan,
+    draw,
+    truth: startTruth(plan, draw),
+    fixes: startFixes(plan.vehicles.length),
+    modem: startModem(plan, soundSpeedMps(temperatureDegC, salinityPsu, Math.min(depthM / 2, SOUND_DEPTH_MAX_M))),
+    scratch: new Float64Array(2),
+    counts: { tick: 0 },
+    deliveries: [],
+    hearings: [],
+    senses: null,
+  };
+  takeCurrents(state);
+  return {
+    get tick() { return state.counts.tick; },
+    get framesSent() { return state.modem.counts.framesSent; },
+    truth: state.truth,
+    perceive: () => perceive(state),
+    advance: (steers) => advance(state, steers),
+    takeHearings: () => state.hearings.splice(0),
+    currentAt: (eastM, northM, timeS, out) => currentAt(plan.currents, { eastM, northM, timeS }, out),
+  };
+}
+
+/** The senses of the current tick; asked again, the same ones. */
+function perceive(state: State): readonly Sense[] {
+  if (state.senses !== null) return state.senses;
+  const { plan, truth, draw, scratch, fixes } = state;
+  const { tick } = state.counts;
+  const heard: HeardFrame[][] = plan.vehicles.map(() => []);
+  for (const { toIndex, frame } of state.deliveries) heard[toIndex]!.push(frame);
+  state.senses = plan.vehicles.map((vehicle, index) => {
+    const at = { draw, plan: vehicle, truth, index, tick, tickS: plan.tickS, scratch };
+    const { heading_deg, speed_mps } = readCompassAndLog(at);
+    return {
+      tick,
+      at_s: onboardTimeS(vehicle, tick * plan.tickS),
+      heading_deg,
+      speed_mps,
+      depth_m: truth.depthM[index]!,
+      battery: truth.battery[index]!,
+      fix: readFix(at, fixes),
+      heard: heard[index]!,
+      orders: [],
+    };
+  });
+  return state.senses;
+}
+
+/** Applies the steers of the current tick and moves to the next. */
+function advance(state: State, steers: readonly Steer[]): void {
+  const { plan, truth, modem, draw, scratch, counts } = state;
+  assert(steers.length === plan.vehicles.length, 'there is a steer for every vehicle');
+  if (state.senses === null) perceive(state);
+  const timeS = counts.tick * plan.tickS;
+  judgeHearings(state, steers);
+  steers.forEach((steer, index) => {
+    assert(steer.tick === counts.tick, 'a steer answers the current tick');
+    if (steer.say !== null) modem.waiting[index] = steer.say;
+  });
+  sendFrames(modem, truth, { draw, timeS });
+  plan.vehicles.forEach((vehicle, index) => {
+    moveBody({
+      truth, index, plan: vehicle, currents: plan.currents, steer: steers[index]!, timeS, tickS: plan.tickS, scratch,
+    });
+  });
+  counts.tick += 1;
+  takeCurrents(state);
+  state.senses = null;
+  state.deliveries = [];
+  endArrivals(modem, counts.tick * plan.tickS, state);
+}
+
+/** What reached an agent was `heard` if the agent used it, `garbled` if it was, `refused` otherwise. */
+function judgeHearings(state: State, steers: readonly Steer[]): void {
+  const place = new Array<number>(steers.length).fill(0);
+  for (const { toIndex, hearing } of state.deliveries) {
+    const said = steers[toIndex]!.heard[place[toIndex]!++];
+    const refused = hearing.fate === 'heard' && said !== 'used';
+    state.hearings.push(refused ? { ...hearing, fate: 'refused' } : hearing);
+  }
+}
+
+/** Renews the true current at every vehicle. */
+function takeCurrents(state: State): void {
+  const { truth, plan, scratch } = state;
+  const timeS = state.counts.tick * plan.tickS;
+  for (let index = 0; index < plan.vehicles.length; index++) {
+    currentAt(plan.currents, { eastM: truth.eastM[index]!, northM: truth.northM[index]!, timeS }, scratch);
+    truth.currentEastMps[index] = scratch[0]!;
+    truth.currentNorthMps[index] = scratch[1]!;
+  }
+}

@@ -1,0 +1,201 @@
+/**
+ * Frames on the water: slots by the sender's own clock, air time, travel time, half duplex, overlap,
+ * and the moment at which each hearer has the last bit.
+ *
+ * A round is N slots; slot k is that of vehicle k; round 0 begins at onboard time 0. A frame ordered in
+ * the steer to sense n leaves in the next own slot that begins at or after tick n; a newer one takes
+ * the place of one still waiting. On the water a frame lasts turn-on + 8·bytes/rate; its last bit
+ * arrives a travel time later, from the distance at the tick of sending. Two frames that overlap at a
+ * hearer are lost to it both (`collided`); one that overlaps its own sending is too (`deaf`). Delay and
+ * repetition of the link come after reception, so they collide with nothing.
+ */
+import { assert } from '../../messages/assert.ts';
+import type { HeardFrame } from '../../messages/sense.ts';
+import { garble, nextFate, startLinks, type LinkFate, type LinkState } from './channel.ts';
+import type { Draw } from './draw.ts';
+import type { SeaPlan, VehiclePlan } from './plan.ts';
+import type { FrameFate, Hearing, Truth } from './sea.ts';
+import { onboardTimeS } from './sensors.ts';
+
+const SLOT_TOLERANCE_S = 1e-9;
+const PAIR_KEY = 16;
+
+/** One frame on its way to one hearer. */
+interface Arrival {
+  readonly sentS: number;
+  readonly fromIndex: number;
+  readonly toIndex: number;
+  /** On the water at the hearer, first bit to last. */
+  readonly firstBitS: number;
+  readonly lastBitS: number;
+  /** When the hearer's modem hands it over. */
+  readonly heardS: number;
+  readonly hex: string;
+  fate: FrameFate;
+  readonly isRepeat: boolean;
+}
+
+export interface ModemState {
+  readonly plan: SeaPlan;
+  readonly soundMps: number;
+  readonly links: LinkState;
+  readonly waiting: (string | null)[];
+  /** The last two sendings of each vehicle, begin and end: begin, end, begin, end. */
+  readonly sendings: Float64Array;
+  /** In flight: at most a few per pair, since every arrival ends within travel and delay. */
+  readonly arrivals: Arrival[];
+  readonly counts: { framesSent: number };
+  readonly fate: LinkFate;
+  readonly scratch: Float64Array;
+}
+
+const LONG_AGO_S = -1e12;
+
+export function startModem(plan: SeaPlan, soundMps: number): ModemState {
+  const count = plan.vehicles.length;
+  return {
+    plan,
+    soundMps,
+    links: startLinks(count * count),
+    waiting: new Array<string | null>(count).fill(null),
+    sendings: new Float64Array(4 * count).fill(LONG_AGO_S),
+    arrivals: [],
+    counts: { framesSent: 0 },
+    fate: { lost: false, garbled: false, delayS: 0, repeatAfterS: -1 },
+    scratch: new Float64Array(2),
+  };
+}
+
+/** The true time of vehicle `index`'s next own slot at or after `timeS`. */
+export function nextSlotS(plan: SeaPlan, index: number, timeS: number): number {
+  const vehicle: VehiclePlan = plan.vehicles[index]!;
+  const roundS = plan.vehicles.length * plan.modem.slotS;
+  const ownS = onboardTimeS(vehicle, timeS) - index * plan.modem.slotS;
+  const slotOwnS = roundS * Math.ceil((ownS - SLOT_TOLERANCE_S) / roundS) + index * plan.modem.slotS;
+  return (slotOwnS - vehicle.clockOffsetS) / (1 + vehicle.clockDriftRatio);
+}
+
+/** Sends the frames whose slot begins in the tick that starts at `timeS`, in fleet order. */
+export function sendFrames(modem: ModemState, truth: Truth, tick: { draw: Draw; timeS: number }): void {
+  const { plan } = modem;
+  for (let index = 0; index < plan.vehicles.length; index++) {
+    const hex = modem.waiting[index]!;
+    if (hex === null) continue;
+    const slotS = Math.max(tick.timeS, nextSlotS(plan, index, tick.timeS));
+    if (!(slotS < tick.timeS + plan.tickS - SLOT_TOLERANCE_S)) continue;
+    modem.waiting[index] = null;
+    modem.counts.framesSent += 1;
+    const airS = plan.modem.turnOnS + (4 * hex.length) / plan.modem.bitRateBps;
+    modem.sendings.copyWithin(4 * index + 2, 4 * index, 4 * index + 2);
+    modem.sendings[4 * index] = slotS;
+    modem.sendings[4 * index + 1] = slotS + airS;
+    for (let hearer = 0; hearer < plan.vehicles.length; hearer++) {
+      if (hearer !== index) sendTo(modem, truth, { ...tick, slotS, from: index, to: hearer, hex, airS });
+    }
+  }
+}
+
+interface Sending {
+  readonly draw: Draw;
+  readonly slotS: number;
+  readonly from: number;
+  readonly to: number;
+  readonly hex: string;
+  readonly airS: number;
+}
+
+function sendTo(modem: ModemState, truth: Truth, sending: Sending): void {
+  const { plan, fate } = modem;
+  const { from, to, draw, slotS } = sending;
+  const east = truth.eastM[from]! - truth.eastM[to]!;
+  const north = truth.northM[from]! - truth.northM[to]!;
+  const down = truth.depthM[from]! - truth.depthM[to]!;
+  const travelS = Math.sqrt(east * east + north * north + down * down) / modem.soundMps;
+  const pair = from * plan.vehicles.length + to;
+  const entity = from * PAIR_KEY + to;
+  const count = modem.links.sent[pair]!;
+  nextFate(modem.links, { draw, link: plan.modem.link, pair, entity, scratch: modem.scratch }, fate);
+  const lastBitS = slotS + sending.airS + travelS;
+  const arrival: Arrival = {
+    sentS: slotS,
+    fromIndex: from,
+    toIndex: to,
+    firstBitS: slotS + plan.modem.turnOnS + travelS,
+    lastBitS,
+    heardS: lastBitS + fate.delayS,
+    hex: fate.garbled ? garble(draw, { entity, count }, sending.hex) : sending.hex,
+    fate: fate.lost ? 'lost' : fate.garbled ? 'garbled' : 'heard',
+    isRepeat: false,
+  };
+  markOverlaps(modem, arrival);
+  modem.arrivals.push(arrival);
+  if (!fate.lost && fate.repeatAfterS >= 0) {
+    modem.arrivals.push({ ...arrival, heardS: arrival.heardS + fate.repeatAfterS, isRepeat: true });
+  }
+  assert(modem.arrivals.length < 4096, 'frames in flight end');
+}
+
+function overlaps(a: Arrival, b: Arrival): boolean {
+  return a.firstBitS < b.lastBitS && b.firstBitS < a.lastBitS;
+}
+
+function markOverlaps(modem: ModemState, arrival: Arrival): void {
+  for (const other of modem.arrivals) {
+    if (other.toIndex !== arrival.toIndex || other.fromIndex === arrival.fromIndex) continue;
+    if (!overlaps(other, arrival)) continue;
+    if (other.fate !== 'lost') other.fate = 'collided';
+    if (arrival.fate !== 'lost') arrival.fate = 'collided';
+  }
+}
+
+/** Whether the hearer was itself sending while the frame arrived. */
+function wasSending(modem: ModemState, arrival: Arrival): boolean {
+  for (let last = 0; last < 2; last++) {
+    const at = 4 * arrival.toIndex + 2 * last;
+    if (modem.sendings[at]! < arrival.lastBitS && arrival.firstBitS < modem.sendings[at + 1]!) return true;
+  }
+  return false;
+}
+
+/** A frame in an agent's hands, and the hearing that stands for it until the agent says what it was. */
+export interface Delivery {
+  readonly toIndex: number;
+  readonly frame: HeardFrame;
+  readonly hearing: Hearing;
+}
+
+/**
+ * Ends every arrival whose time has come by `timeS`: what reached an agent goes to `deliveries`, in
+ * order of time, sender and hearer; what did not becomes a hearing at once.
+ */
+export function endArrivals(
+  modem: ModemState, timeS: number, into: { deliveries: Delivery[]; hearings: Hearing[] },
+): void {
+  const ended = modem.arrivals.filter((arrival) => arrival.heardS <= timeS);
+  if (ended.length === 0) return;
+  let kept = 0;
+  for (const arrival of modem.arrivals) {
+    if (arrival.heardS > timeS) modem.arrivals[kept++] = arrival;
+  }
+  modem.arrivals.length = kept;
+  ended.sort((a, b) => a.heardS - b.heardS || a.fromIndex - b.fromIndex || a.toIndex - b.toIndex);
+  for (const arrival of ended) {
+    if (arrival.fate !== 'lost' && arrival.fate !== 'collided' && wasSending(modem, arrival)) arrival.fate = 'deaf';
+    const reaches = arrival.fate === 'heard' || arrival.fate === 'garbled';
+    const hearing: Hearing = {
+      sentS: arrival.sentS,
+      heardS: reaches ? arrival.heardS : null,
+      fromIndex: arrival.fromIndex,
+      toIndex: arrival.toIndex,
+      bytes: arrival.hex.length / 2,
+      fate: arrival.fate,
+    };
+    if (!reaches) {
+      into.hearings.push(hearing);
+      continue;
+    }
+    const hearer = modem.plan.vehicles[arrival.toIndex]!;
+    const frame = { at_s: onboardTimeS(hearer, arrival.heardS), bytes: arrival.hex };
+    into.deliveries.push({ toIndex: arrival.toIndex, frame, hearing });
+  }
+}

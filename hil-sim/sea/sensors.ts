@@ -1,0 +1,98 @@
+/**
+ * From truth to what a vehicle perceives: compass, log, onboard clock and position fix.
+ *
+ * Compass = true heading + bias + white noise; log = speed·(1 + scale) + white noise; clock =
+ * (1 + drift)·t + offset; a fix has independent normal errors per axis. Bias and scale are drawn once
+ * per vehicle and seed, unless the plan fixes them. Fixes come every `fixEveryS` from a drawn moment
+ * of the first period on, so that the fleet's fixes do not fall on one tick; a fix by surface needs a
+ * depth of less than a metre; with latency it arrives later and says when it was true.
+ */
+import { headingDegFromRad } from '../../messages/angles.ts';
+import type { Fix } from '../../messages/sense.ts';
+import { PURPOSE, normalPair, uniform, type Draw } from './draw.ts';
+import type { VehiclePlan } from './plan.ts';
+import type { Truth } from './sea.ts';
+
+const SURFACE_DEPTH_M = 1;
+
+/** A fix that was measured and has not arrived, or null; one per vehicle. */
+export interface FixState {
+  readonly waiting: (Fix | null)[];
+  /** Tick at which the waiting fix arrives. */
+  readonly arrivesTick: Int32Array;
+  /** Fixes measured so far. */
+  readonly measured: Uint32Array;
+}
+
+export function startFixes(count: number): FixState {
+  return {
+    waiting: new Array<Fix | null>(count).fill(null),
+    arrivesTick: new Int32Array(count),
+    measured: new Uint32Array(count),
+  };
+}
+
+/** The vehicle's own clock at a true time. */
+export function onboardTimeS(plan: VehiclePlan, timeS: number): number {
+  return timeS + plan.clockDriftRatio * timeS + plan.clockOffsetS + 0;
+}
+
+/** The compass bias and log scale of vehicle `index` for this seed. */
+export function drawBiases(draw: Draw, plan: VehiclePlan, index: number): { biasRad: number; scale: number } {
+  const pair = new Float64Array(2);
+  normalPair(draw, { entity: index, purpose: PURPOSE.compassBias, count: 0 }, pair);
+  const biasRad = plan.compassBiasRad ?? plan.compassBiasSigmaRad * pair[0]!;
+  normalPair(draw, { entity: index, purpose: PURPOSE.logScale, count: 0 }, pair);
+  return { biasRad, scale: plan.logScale ?? plan.logScaleSigma * pair[0]! };
+}
+
+export interface SensorTick {
+  readonly draw: Draw;
+  readonly plan: VehiclePlan;
+  readonly truth: Truth;
+  readonly index: number;
+  readonly tick: number;
+  readonly tickS: number;
+  readonly scratch: Float64Array;
+}
+
+/** Heading in degrees and speed in m/s as compass and log read them in this tick. */
+export function readCompassAndLog(at: SensorTick): { heading_deg: number; speed_mps: number } {
+  const { truth, index, plan, scratch } = at;
+  normalPair(at.draw, { entity: index, purpose: PURPOSE.compassNoise, count: at.tick }, scratch);
+  const headingRad = truth.headingRad[index]! + truth.compassBiasRad[index]! + plan.compassSigmaRad * scratch[0]!;
+  const speedMps = truth.speedMps[index]! * (1 + truth.logScale[index]!) + plan.logSigmaMps * scratch[1]!;
+  return { heading_deg: headingDegFromRad(headingRad), speed_mps: speedMps + 0 };
+}
+
+/** Measures a fix if one falls on this tick, and hands over the one that arrives in it. */
+export function readFix(at: SensorTick, fixes: FixState): Fix | null {
+  const { draw, plan, truth, index, tick, tickS } = at;
+  const firstS = plan.fixEveryS * uniform(draw, { entity: index, purpose: PURPOSE.fixStagger, count: 0 });
+  const dueS = firstS + plan.fixEveryS * fixes.measured[index]!;
+  if (tick * tickS >= dueS) {
+    const count = fixes.measured[index]!;
+    fixes.measured[index] = count + 1;
+    if (plan.fixFrom === 'baseline' || truth.depthM[index]! < SURFACE_DEPTH_M) {
+      fixes.waiting[index] = measureFix(at, count);
+      fixes.arrivesTick[index] = tick + Math.ceil(plan.fixLatencyS / tickS);
+    }
+  }
+  const waiting = fixes.waiting[index]!;
+  if (waiting === null || tick < fixes.arrivesTick[index]!) return null;
+  fixes.waiting[index] = null;
+  return waiting;
+}
+
+function measureFix(at: SensorTick, count: number): Fix {
+  const { draw, plan, truth, index, scratch } = at;
+  const isOutlier = uniform(draw, { entity: index, purpose: PURPOSE.fixOutlier, count }) < plan.fixOutlierShare;
+  const sigmaM = isOutlier ? plan.fixOutlierSigmaM : plan.fixSigmaM;
+  normalPair(draw, { entity: index, purpose: PURPOSE.fixNoise, count }, scratch);
+  return {
+    at_s: onboardTimeS(plan, at.tick * at.tickS),
+    east_m: truth.eastM[index]! + sigmaM * scratch[0]! + 0,
+    north_m: truth.northM[index]! + sigmaM * scratch[1]! + 0,
+    sigma_m: plan.fixSigmaM,
+  };
+}
