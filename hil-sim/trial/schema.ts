@@ -7,9 +7,11 @@
  * built yet is refused in `not-built.ts`.
  */
 import { z } from 'zod';
+import { radFromDeg } from '../../messages/angles.ts';
 import { name } from '../../messages/fields.ts';
 import { FLEET_MAX, NOTE_END_MAX_S } from '../../messages/frame.ts';
 import { SETTINGS, type Setting, type SettingKey } from '../../messages/settings.ts';
+import { formatQuantity } from '../../messages/units.ts';
 import { quantity } from './quantity.ts';
 
 const length = (min?: number, max?: number) => quantity('length', { min: min ?? -1e6, max: max ?? 1e6 });
@@ -184,12 +186,19 @@ const modemSchema = z.strictObject({
 
 const SETTING_DIMENSION = { s: 'time', m: 'length', mps: 'speed', deg: 'angle', share: 'share' } as const;
 
+/** The default of a setting in SI: only degrees differ from the table. */
+function settingSi(setting: Setting): number {
+  return setting.unit === 'deg' ? radFromDeg(setting.default) : setting.default;
+}
+
 const onboardShape: Record<string, z.ZodType> = {};
 for (const key of Object.keys(SETTINGS) as SettingKey[]) {
   const setting: Setting = SETTINGS[key];
   onboardShape[key] = setting.unit === 'count'
     ? z.int().min(setting.min).max(setting.max).default(setting.default).describe(setting.says)
-    : quantity(SETTING_DIMENSION[setting.unit]).optional().describe(setting.says);
+    : quantity(SETTING_DIMENSION[setting.unit])
+        .prefault(formatQuantity(settingSi(setting), SETTING_DIMENSION[setting.unit]))
+        .describe(setting.says);
 }
 
 /** Every measure that a limit may name; a name ending in `Min` must be at least the value. */

@@ -1,0 +1,83 @@
+/** From a checked trial to what the sea is told. */
+import type { CurrentPlan, SeaPlan, VehiclePlan } from '../sea/plan.ts';
+import type { Trial, TrialCurrent } from './schema.ts';
+import { fullVehicles, type FullVehicle } from './vehicles.ts';
+
+export function seaPlan(trial: Trial): SeaPlan {
+  const { modem, water } = trial;
+  return {
+    seed: trial.seed,
+    tickS: trial.tick,
+    vehicles: fullVehicles(trial).map(vehiclePlan),
+    currents: water.currents.map(currentPlan),
+    modem: {
+      frameBytes: modem.frame,
+      bitRateBps: modem.bitRate,
+      slotS: modem.slot,
+      turnOnS: modem.turnOn,
+      guardS: modem.guard,
+      link: {
+        loss: modem.link.loss,
+        burst: modem.link.burst,
+        delayS: modem.link.delay,
+        jitterS: modem.link.jitter,
+        repeat: modem.link.repeat,
+        garble: modem.link.garble,
+      },
+    },
+    water: { temperatureDegC: water.temperature, salinityPsu: water.salinity, depthM: water.bottom },
+  };
+}
+
+function vehiclePlan(vehicle: FullVehicle): VehiclePlan {
+  return {
+    name: vehicle.name,
+    startEastM: vehicle.start.east,
+    startNorthM: vehicle.start.north,
+    startDepthM: vehicle.start.depth,
+    startHeadingRad: vehicle.start.heading < 0 ? vehicle.start.heading + 2 * Math.PI : vehicle.start.heading,
+    cruiseMps: vehicle.speed.cruise,
+    speedMinMps: vehicle.speed.min,
+    speedMaxMps: vehicle.speed.max,
+    speedLagS: vehicle.speed.lag,
+    turnRateRadps: vehicle.turnRate,
+    climbMps: vehicle.climb,
+    batteryJ: vehicle.battery,
+    powerHotelW: vehicle.power.hotel,
+    powerCruiseW: vehicle.power.cruise,
+    clockOffsetS: vehicle.clock.offset,
+    clockDriftRatio: vehicle.clock.drift,
+    fixFrom: vehicle.fix.from,
+    fixEveryS: vehicle.fix.every,
+    fixSigmaM: vehicle.fix.sigma,
+    fixLatencyS: vehicle.fix.latency,
+    fixOutlierShare: vehicle.fix.outlier.share,
+    fixOutlierSigmaM: vehicle.fix.outlier.sigma,
+    compassBiasSigmaRad: vehicle.compass.bias,
+    compassBiasRad: vehicle.compass.biasIs ?? null,
+    compassSigmaRad: vehicle.compass.sigma,
+    logScaleSigma: vehicle.log.scale,
+    logScale: vehicle.log.scaleIs ?? null,
+    logSigmaMps: vehicle.log.sigma,
+  };
+}
+
+function currentPlan(current: TrialCurrent): CurrentPlan {
+  switch (current.kind) {
+    case 'uniform':
+      return { kind: 'uniform', setRad: current.set, driftMps: current.drift };
+    case 'tide':
+      return {
+        kind: 'tide', periodS: current.period, majorMps: current.major, minorMps: current.minor,
+        bearingRad: current.bearing, phaseRad: current.phase,
+      };
+    case 'eddy':
+      return {
+        kind: 'eddy', centreEastM: current.centre.east, centreNorthM: current.centre.north,
+        radiusM: current.radius, peakMps: current.peak, turn: current.turn,
+        movingSetRad: current.moving?.set ?? 0, movingDriftMps: current.moving?.drift ?? 0,
+      };
+    case 'shear':
+      return { kind: 'shear', bearingRad: current.bearing, gradientPerS: current.gradient / current.over };
+  }
+}
