@@ -1,0 +1,33 @@
+/**
+ * Bytes on the wire to messages and back. Reading answers value or reason and never throws, whatever
+ * the bytes; writing trusts the types.
+ */
+import type { z } from 'zod';
+
+export const MESSAGE_BYTES_MAX = 256 * 1024;
+
+export type Reading<T> = { readonly ok: true; readonly value: T } | { readonly ok: false; readonly reason: string };
+
+const decoder = new TextDecoder('utf-8', { fatal: true });
+const encoder = new TextEncoder();
+
+/** Reads one message of a schema from its bytes (UTF-8 JSON). */
+export function readMessage<T>(schema: z.ZodType<T>, bytes: Uint8Array): Reading<T> {
+  if (bytes.length === 0) return { ok: false, reason: 'is empty' };
+  if (bytes.length > MESSAGE_BYTES_MAX) return { ok: false, reason: `has ${bytes.length} bytes, but must have at most ${MESSAGE_BYTES_MAX}` };
+  let value: unknown;
+  try {
+    value = JSON.parse(decoder.decode(bytes));
+  } catch {
+    return { ok: false, reason: 'is not JSON in UTF-8' };
+  }
+  const parsed = schema.safeParse(value);
+  if (parsed.success) return { ok: true, value: parsed.data };
+  const issue = parsed.error.issues[0];
+  return { ok: false, reason: issue === undefined ? 'does not fit its schema' : `${issue.path.join('.') || 'message'}: ${issue.message}` };
+}
+
+/** A message as bytes. */
+export function writeMessage(message: unknown): Uint8Array {
+  return encoder.encode(JSON.stringify(message));
+}
