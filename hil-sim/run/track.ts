@@ -1,0 +1,147 @@
+/**
+ * The loop as the bench measures against it: a closed chain of 4096 short chords, each vertex on the
+ * true line, with its arc length. Slow-and-plain geometry on purpose, shared with no agent: whatever a
+ * closed form gets wrong about an angle, this does not repeat.
+ *
+ * The nearest point is exact on the chain: blocks of chords are left out only when their bounding circle
+ * is farther than the best found. The chain lies inside a circle by at most R(1 − cos(π/4096)), which
+ * is 0.2 mm at 600 m; the phase of a place d off it is right to d/(R + d) of half a chord. Phase 0 is
+ * due north of a circle's centre; phase grows along the travel.
+ */
+import { assert } from '../../messages/assert.ts';
+import type { Trial } from '../trial/schema.ts';
+
+const CHORDS = 4096;
+const CHORDS_A_BLOCK = 64;
+const BLOCKS = CHORDS / CHORDS_A_BLOCK;
+
+type Loop = Trial['mission']['loop'];
+
+export interface Track {
+  readonly lengthM: number;
+  /** Vertices in the order of travel; the last repeats the first. */
+  readonly eastM: Float64Array;
+  readonly northM: Float64Array;
+  /** Arc length from phase 0 to each vertex. */
+  readonly alongM: Float64Array;
+  /** Bounding circles of the blocks: east, north, radius. */
+  readonly blocks: Float64Array;
+}
+
+/** The point of `loop` at a share of its parameter, 0 to 1; written to `out`. */
+function pointOf(loop: Loop, share: number, out: Float64Array): void {
+  switch (loop.shape) {
+    case 'circle': {
+      const bearingRad = 2 * Math.PI * (loop.turn === 'clockwise' ? share : -share);
+      out[0] = loop.centre.east + loop.radius * Math.sin(bearingRad);
+      out[1] = loop.centre.north + loop.radius * Math.cos(bearingRad);
+      return;
+    }
+    default:
+      loop.shape satisfies never;
+  }
+}
+
+/** The chain of a mission's loop. */
+export function trackOf(loop: Loop): Track {
+  const eastM = new Float64Array(CHORDS + 1);
+  const northM = new Float64Array(CHORDS + 1);
+  const alongM = new Float64Array(CHORDS + 1);
+  const point = new Float64Array(2);
+  for (let index = 0; index <= CHORDS; index++) {
+    pointOf(loop, (index % CHORDS) / CHORDS, point);
+    eastM[index] = point[0]!;
+    northM[index] = point[1]!;
+    if (index === 0) continue;
+    const east = point[0]! - eastM[index - 1]!;
+    const north = point[1]! - northM[index - 1]!;
+    alongM[index] = alongM[index - 1]! + Math.sqrt(east * east + north * north);
+  }
+  assert(alongM[CHORDS]! > 0, 'a loop has a length');
+  return { lengthM: alongM[CHORDS]!, eastM, northM, alongM, blocks: boundBlocks(eastM, northM) };
+}
+
+function boundBlocks(eastM: Float64Array, northM: Float64Array): Float64Array {
+  const blocks = new Float64Array(3 * BLOCKS);
+  for (let block = 0; block < BLOCKS; block++) {
+    const first = block * CHORDS_A_BLOCK;
+    const middle = first + CHORDS_A_BLOCK / 2;
+    let radiusM = 0;
+    for (let index = first; index <= first + CHORDS_A_BLOCK; index++) {
+      const east = eastM[index]! - eastM[middle]!;
+      const north = northM[index]! - northM[middle]!;
+      radiusM = Math.max(radiusM, Math.sqrt(east * east + north * north));
+    }
+    blocks.set([eastM[middle]!, northM[middle]!, radiusM], 3 * block);
+  }
+  return blocks;
+}
+
+/** Where a search ended: `place` holds distance to the loop in m and phase; `chord` starts the next search. */
+export interface Nearest {
+  readonly place: Float64Array;
+  readonly chord: Int32Array;
+  /** Squared distance, arc length and chord of the best so far; a search fills it anew. */
+  readonly best: Float64Array;
+}
+
+export function startNearest(): Nearest {
+  return { place: new Float64Array(2), chord: new Int32Array(1), best: new Float64Array(3) };
+}
+
+/** The nearest point of the loop, by distance and phase in [0, 1); a near guess only makes it quicker. */
+export function findNearest(track: Track, eastM: number, northM: number, nearest: Nearest): void {
+  const { best } = nearest;
+  best[0] = Infinity;
+  tryChord(track, eastM, northM, nearest.chord[0]!, best);
+  let reachM = Math.sqrt(best[0]!);
+  const { blocks } = track;
+  for (let block = 0; block < BLOCKS; block++) {
+    const east = eastM - blocks[3 * block]!;
+    const north = northM - blocks[3 * block + 1]!;
+    const withinM = reachM + blocks[3 * block + 2]!;
+    if (east * east + north * north > withinM * withinM) continue;
+    const end = (block + 1) * CHORDS_A_BLOCK;
+    for (let chord = block * CHORDS_A_BLOCK; chord < end; chord++) tryChord(track, eastM, northM, chord, best);
+    reachM = Math.sqrt(best[0]!);
+  }
+  const phase = best[1]! / track.lengthM;
+  nearest.place[0] = reachM;
+  nearest.place[1] = phase >= 1 ? phase - 1 : phase;
+  nearest.chord[0] = best[2]!;
+}
+
+function tryChord(track: Track, eastM: number, northM: number, chord: number, best: Float64Array): void {
+  const fromEast = track.eastM[chord]!;
+  const fromNorth = track.northM[chord]!;
+  const wayEast = track.eastM[chord + 1]! - fromEast;
+  const wayNorth = track.northM[chord + 1]! - fromNorth;
+  const east = eastM - fromEast;
+  const north = northM - fromNorth;
+  const way2 = wayEast * wayEast + wayNorth * wayNorth;
+  let share = (east * wayEast + north * wayNorth) / way2;
+  share = share < 0 ? 0 : share > 1 ? 1 : share;
+  const offEast = east - share * wayEast;
+  const offNorth = north - share * wayNorth;
+  const off2 = offEast * offEast + offNorth * offNorth;
+  if (off2 >= best[0]!) return;
+  best[0] = off2;
+  best[1] = track.alongM[chord]! + share * (track.alongM[chord + 1]! - track.alongM[chord]!);
+  best[2] = chord;
+}
+
+/** The place at a phase in [0, 1), written to `out` as east, north. */
+export function placeAt(track: Track, phase: number, out: Float64Array): void {
+  assert(phase >= 0 && phase < 1, 'a phase is in [0, 1)');
+  const alongM = phase * track.lengthM;
+  let low = 0;
+  let high = CHORDS;
+  while (high - low > 1) {
+    const middle = (low + high) >> 1;
+    if (track.alongM[middle]! <= alongM) low = middle;
+    else high = middle;
+  }
+  const share = (alongM - track.alongM[low]!) / (track.alongM[high]! - track.alongM[low]!);
+  out[0] = track.eastM[low]! + share * (track.eastM[high]! - track.eastM[low]!);
+  out[1] = track.northM[low]! + share * (track.northM[high]! - track.northM[low]!);
+}
