@@ -16,7 +16,16 @@ export interface Setting {
 }
 
 export const SETTINGS = {
-  lookAhead: { unit: 's', default: 40, min: 1, max: 600, says: 'time in which a cross-track error is steered out' },
+  // Holding the line and the place on it.
+  converge: { unit: 'm', default: 30, min: 2, max: 500, says: 'a cross-track error this large is steered out at 45 degrees; smaller ones less steeply' },
+  placeTime: { unit: 's', default: 100, min: 5, max: 3600, says: 'time in which a lag behind the own place is made up by speed' },
+  speedCorrection: { unit: 'mps', default: 0.35, min: 0, max: 5, says: 'greatest correction of the speed along the loop' },
+  patternFollow: { unit: 's', default: 300, min: 10, max: 36_000, says: 'time in which the pattern of places follows what the fleet shows' },
+  commonSpeedTime: { unit: 's', default: 600, min: 60, max: 36_000, says: 'time in which the common speed along the loop follows the currents' },
+  peerSilence: { unit: 's', default: 600, min: 10, max: 36_000, says: 'a peer that was not heard for so long no longer counts' },
+  takeHold: { unit: 'm', default: 60, min: 5, max: 500, says: 'joining ends within this cross-track, and twice it along the loop' },
+  letGo: { unit: 'm', default: 200, min: 10, max: 5000, says: 'holding ends beyond this cross-track' },
+  batteryReserve: { unit: 'share', default: 0.15, min: 0, max: 0.9, says: 'charge kept back when the way home is reckoned' },
   // What the agent calls stale or uncertain, in frames and to its own steering.
   mapStale: { unit: 'mps', default: 0.15, min: 0.01, max: 2, says: 'stated sd of the current at the own place above which the map counts as stale' },
   positionUncertain: { unit: 'm', default: 40, min: 1, max: 1000, says: 'stated sd of the own position above which it counts as uncertain' },

@@ -1,0 +1,130 @@
+/**
+ * Who takes which place, without a leader. Each vehicle reckons how soon each vehicle it has heard of
+ * could meet each place, starts from fleet order, and swaps pairs as long as that lowers the sum of the
+ * squared times: the same numbers give the same answer everywhere. What loss leaves different is
+ * settled by claims: a vehicle on its way says the phase of the place it makes for; of two on one place
+ * the one that holds it keeps it, else the lower in fleet order.
+ */
+import { wrapHalf } from './angle.ts';
+import { pointAt, type Loop } from './loop.ts';
+import { nearestPattern, placePhase, turnsPerS, type Pattern } from './pattern.ts';
+import { isHeard, peerPhase, peerState, type Peers } from './peers.ts';
+
+/** Rounds of the meeting-time iteration; each shrinks the error by about the ratio of speeds. */
+const MEETING_ROUNDS = 24;
+/** Passes over all pairs; in practice three are enough for sixteen. */
+const SWAP_PASSES_MAX = 16;
+/** Two phases closer than this share of the smallest gap are one place. */
+const SAME_PLACE_SHARE = 0.45;
+
+export interface Vehicle {
+  readonly eastM: number;
+  readonly northM: number;
+  readonly speedMps: number;
+}
+
+/** Time until a vehicle that heads straight for it meets a place that moves with the pattern. */
+export function meetingS(loop: Loop, pattern: Pattern, place: number, vehicle: Vehicle): number {
+  const point = new Float64Array(2);
+  let timeS = 0;
+  for (let round = 0; round < MEETING_ROUNDS; round++) {
+    pointAt(loop, placePhase(pattern, place) + turnsPerS(pattern) * timeS, point);
+    const east = point[0]! - vehicle.eastM;
+    const north = point[1]! - vehicle.northM;
+    timeS = Math.sqrt(east * east + north * north) / vehicle.speedMps;
+  }
+  return timeS;
+}
+
+export interface PlaceQuestion {
+  readonly loop: Loop;
+  readonly pattern: Pattern;
+  readonly peers: Peers;
+  readonly self: Vehicle;
+  readonly atS: number;
+  readonly silenceS: number;
+}
+
+/** The place of this vehicle in the assignment of all vehicles heard. */
+export function choosePlace(question: PlaceQuestion): number {
+  const { peers, self } = question;
+  const count = peers.count;
+  const costs = new Float64Array(count * count);
+  for (let vehicle = 0; vehicle < count; vehicle++) {
+    const known = vehicle === peers.selfIndex || isHeard(peers, vehicle, question);
+    if (!known) continue;
+    const from = vehicle === peers.selfIndex
+      ? self
+      : { eastM: peers.eastM[vehicle]!, northM: peers.northM[vehicle]!, speedMps: self.speedMps };
+    for (let place = 0; place < count; place++) {
+      costs[vehicle * count + place] = meetingS(question.loop, question.pattern, place, from) ** 2;
+    }
+  }
+  const placeOf = Uint8Array.from({ length: count }, (_, index) => index);
+  for (let pass = 0; pass < SWAP_PASSES_MAX; pass++) {
+    if (!swapPairs(placeOf, costs, count)) break;
+  }
+  return placeOf[peers.selfIndex]!;
+}
+
+/** One pass over all pairs in order; whether any swap lowered the cost. */
+function swapPairs(placeOf: Uint8Array, costs: Float64Array, count: number): boolean {
+  let swapped = false;
+  for (let a = 0; a < count; a++) {
+    for (let b = a + 1; b < count; b++) {
+      const now = costs[a * count + placeOf[a]!]! + costs[b * count + placeOf[b]!]!;
+      const then = costs[a * count + placeOf[b]!]! + costs[b * count + placeOf[a]!]!;
+      if (!(then < now * (1 - 1e-9))) continue;
+      const kept = placeOf[a]!;
+      placeOf[a] = placeOf[b]!;
+      placeOf[b] = kept;
+      swapped = true;
+    }
+  }
+  return swapped;
+}
+
+/** The place that a peer holds or makes for, or −1 if it says nothing of one. */
+function claimOf(question: PlaceQuestion, peer: number): number {
+  const { peers, pattern } = question;
+  if (peer === peers.selfIndex || !isHeard(peers, peer, question)) return -1;
+  const state = peerState(peers, peer);
+  if (state !== 'joining' && state !== 'holding') return -1;
+  const phase = peerPhase(peers, peer, { atS: question.atS, turnsPerS: turnsPerS(pattern) });
+  const place = nearestPattern(pattern, phase);
+  const off = Math.abs(wrapHalf(phase - placePhase(pattern, place)));
+  return off <= SAME_PLACE_SHARE / pattern.offsets.length ? place : -1;
+}
+
+/** Whether a peer with the better right is on `place`. */
+export function isTaken(question: PlaceQuestion, place: number, holding: boolean): boolean {
+  const { peers } = question;
+  for (let peer = 0; peer < peers.count; peer++) {
+    if (claimOf(question, peer) !== place) continue;
+    const peerHolds = peerState(peers, peer) === 'holding';
+    if (peerHolds !== holding) {
+      if (peerHolds) return true;
+    } else if (peer < peers.selfIndex) return true;
+  }
+  return false;
+}
+
+/** The free place that is soonest met; the present one if all are claimed. */
+export function freePlace(question: PlaceQuestion, present: number): number {
+  const { peers, pattern } = question;
+  let best = present;
+  let bestS = Infinity;
+  for (let place = 0; place < pattern.offsets.length; place++) {
+    let free = true;
+    for (let peer = 0; peer < peers.count; peer++) {
+      if (claimOf(question, peer) === place) free = false;
+    }
+    if (!free) continue;
+    const timeS = meetingS(question.loop, pattern, place, question.self);
+    if (timeS < bestS) {
+      best = place;
+      bestS = timeS;
+    }
+  }
+  return best;
+}
