@@ -12,8 +12,8 @@ import { assert } from '../../messages/assert.ts';
 import type { Trial } from '../trial/schema.ts';
 
 const CHORDS = 4096;
-const CHORDS_A_BLOCK = 64;
-const BLOCKS = CHORDS / CHORDS_A_BLOCK;
+const CHORDS_A_BLOCK = 256;
+const CHORDS_A_PIECE = 16;
 
 type Loop = Trial['mission']['loop'];
 
@@ -24,8 +24,9 @@ export interface Track {
   readonly northM: Float64Array;
   /** Arc length from phase 0 to each vertex. */
   readonly alongM: Float64Array;
-  /** Bounding circles of the blocks: east, north, radius. */
+  /** Bounding circles of blocks of chords, and of the pieces of blocks: east, north, radius. */
   readonly blocks: Float64Array;
+  readonly pieces: Float64Array;
 }
 
 /** The point of `loop` at a share of its parameter, 0 to 1; written to `out`. */
@@ -58,35 +59,40 @@ export function trackOf(loop: Loop): Track {
     alongM[index] = alongM[index - 1]! + Math.sqrt(east * east + north * north);
   }
   assert(alongM[CHORDS]! > 0, 'a loop has a length');
-  return { lengthM: alongM[CHORDS]!, eastM, northM, alongM, blocks: boundBlocks(eastM, northM) };
+  return {
+    lengthM: alongM[CHORDS]!, eastM, northM, alongM,
+    blocks: bounds(eastM, northM, CHORDS_A_BLOCK),
+    pieces: bounds(eastM, northM, CHORDS_A_PIECE),
+  };
 }
 
-function boundBlocks(eastM: Float64Array, northM: Float64Array): Float64Array {
-  const blocks = new Float64Array(3 * BLOCKS);
-  for (let block = 0; block < BLOCKS; block++) {
-    const first = block * CHORDS_A_BLOCK;
-    const middle = first + CHORDS_A_BLOCK / 2;
+/** A bounding circle for every run of `size` chords, about its middle vertex. */
+function bounds(eastM: Float64Array, northM: Float64Array, size: number): Float64Array {
+  const circles = new Float64Array((3 * CHORDS) / size);
+  for (let run = 0; run < CHORDS / size; run++) {
+    const first = run * size;
+    const middle = first + size / 2;
     let radiusM = 0;
-    for (let index = first; index <= first + CHORDS_A_BLOCK; index++) {
+    for (let index = first; index <= first + size; index++) {
       const east = eastM[index]! - eastM[middle]!;
       const north = northM[index]! - northM[middle]!;
       radiusM = Math.max(radiusM, Math.sqrt(east * east + north * north));
     }
-    blocks.set([eastM[middle]!, northM[middle]!, radiusM], 3 * block);
+    circles.set([eastM[middle]!, northM[middle]!, radiusM], 3 * run);
   }
-  return blocks;
+  return circles;
 }
 
 /** Where a search ended: `place` holds distance to the loop in m and phase; `chord` starts the next search. */
 export interface Nearest {
   readonly place: Float64Array;
   readonly chord: Int32Array;
-  /** Squared distance, arc length and chord of the best so far; a search fills it anew. */
+  /** Squared distance, arc length, chord and distance of the best so far; a search fills it anew. */
   readonly best: Float64Array;
 }
 
 export function startNearest(): Nearest {
-  return { place: new Float64Array(2), chord: new Int32Array(1), best: new Float64Array(3) };
+  return { place: new Float64Array(2), chord: new Int32Array(1), best: new Float64Array(4) };
 }
 
 /** The nearest point of the loop, by distance and phase in [0, 1); a near guess only makes it quicker. */
@@ -94,21 +100,28 @@ export function findNearest(track: Track, eastM: number, northM: number, nearest
   const { best } = nearest;
   best[0] = Infinity;
   tryChord(track, eastM, northM, nearest.chord[0]!, best);
-  let reachM = Math.sqrt(best[0]!);
-  const { blocks } = track;
-  for (let block = 0; block < BLOCKS; block++) {
-    const east = eastM - blocks[3 * block]!;
-    const north = northM - blocks[3 * block + 1]!;
-    const withinM = reachM + blocks[3 * block + 2]!;
-    if (east * east + north * north > withinM * withinM) continue;
-    const end = (block + 1) * CHORDS_A_BLOCK;
-    for (let chord = block * CHORDS_A_BLOCK; chord < end; chord++) tryChord(track, eastM, northM, chord, best);
-    reachM = Math.sqrt(best[0]!);
+  const blocks = CHORDS / CHORDS_A_BLOCK;
+  const pieces = CHORDS_A_BLOCK / CHORDS_A_PIECE;
+  for (let block = 0; block < blocks; block++) {
+    if (isBeyond(track.blocks, block, eastM, northM, best)) continue;
+    for (let piece = block * pieces; piece < (block + 1) * pieces; piece++) {
+      if (isBeyond(track.pieces, piece, eastM, northM, best)) continue;
+      const end = (piece + 1) * CHORDS_A_PIECE;
+      for (let chord = piece * CHORDS_A_PIECE; chord < end; chord++) tryChord(track, eastM, northM, chord, best);
+    }
   }
   const phase = best[1]! / track.lengthM;
-  nearest.place[0] = reachM;
+  nearest.place[0] = Math.sqrt(best[0]!);
   nearest.place[1] = phase >= 1 ? phase - 1 : phase;
   nearest.chord[0] = best[2]!;
+}
+
+/** Whether a bounding circle lies wholly farther away than the best so far. */
+function isBeyond(circles: Float64Array, run: number, eastM: number, northM: number, best: Float64Array): boolean {
+  const east = eastM - circles[3 * run]!;
+  const north = northM - circles[3 * run + 1]!;
+  const withinM = best[3]! + circles[3 * run + 2]!;
+  return east * east + north * north > withinM * withinM;
 }
 
 function tryChord(track: Track, eastM: number, northM: number, chord: number, best: Float64Array): void {
@@ -126,6 +139,7 @@ function tryChord(track: Track, eastM: number, northM: number, chord: number, be
   const off2 = offEast * offEast + offNorth * offNorth;
   if (off2 >= best[0]!) return;
   best[0] = off2;
+  best[3] = Math.sqrt(off2);
   best[1] = track.alongM[chord]! + share * (track.alongM[chord + 1]! - track.alongM[chord]!);
   best[2] = chord;
 }
