@@ -20,7 +20,7 @@
  * A note: origin 4, number 10 (from 1), end 17 (s of the origin's clock, to 36.4 h), duration 11 (s),
  * mean current east and north 12 each (1 mm/s, ±2.047 m/s), start and end of its path 12 × 4 (2 m,
  * ±4094 m), sag 6 (2 m, ±62 m: how far the path's middle lies to the right of its chord), chained 1
- * (its first fix is the last fix of the note before), fix sigma 4 (0.5·2^(k/2) m, 0.5 to 90.5 m),
+ * (its first fix is the last fix of the note before), fix sigma 4 (5·2^((k−7)/2) m, 0.44 to 80 m),
  * skipped 3 (that many numbers before it were never issued).
  *
  * Haves start at origin (5 × sequence) mod fleet size, so that in larger fleets origins take turns.
@@ -49,7 +49,9 @@ const CURRENT: FixedPoint = { width: 12, step: 0.001, signed: true };
 const PATH: FixedPoint = { width: 12, step: 2, signed: true };
 const SAG: FixedPoint = { width: 6, step: 2, signed: true };
 const FIX_SIGMA_CODES = 16;
-const FIX_SIGMA_LEAST_M = 0.5;
+/** Half octaves about 5 m, so that usual fix sigmas (1.25, 2.5, 5, 10, 20 m) are exact. */
+const FIX_SIGMA_MIDDLE_M = 5;
+const FIX_SIGMA_MIDDLE_CODE = 7;
 
 /** The farthest place from the datum, per axis, that a frame can say. */
 export const FRAME_POSITION_MAX_M = Math.min(fixedPointMax(MAP_POSITION), fixedPointMax(PATH));
@@ -116,14 +118,14 @@ export function havesFirstOrigin(sequence: number, fleetSize: number): number {
   return (HAVES_PER_FRAME * sequence) % fleetSize;
 }
 
-/** The code of a fix sigma: the nearest half power of two, held to 0.5 to 90.5 m. */
+/** The code of a fix sigma: the nearest half octave, held to 0.44 to 80 m. */
 function fixSigmaCode(fixSigmaM: number): number {
-  const code = Math.round(2 * Math.log2(Math.max(fixSigmaM, FIX_SIGMA_LEAST_M) / FIX_SIGMA_LEAST_M));
-  return Math.min(FIX_SIGMA_CODES - 1, Math.max(0, code));
+  const octaves = Math.log2(Math.max(fixSigmaM, Number.MIN_VALUE) / FIX_SIGMA_MIDDLE_M);
+  return Math.min(FIX_SIGMA_CODES - 1, Math.max(0, FIX_SIGMA_MIDDLE_CODE + Math.round(2 * octaves)));
 }
 
 function fixSigmaFromCode(code: number): number {
-  return FIX_SIGMA_LEAST_M * 2 ** (code / 2);
+  return FIX_SIGMA_MIDDLE_M * 2 ** ((code - FIX_SIGMA_MIDDLE_CODE) / 2);
 }
 
 /** The note as every vehicle, its origin included, will use it: each field on its grid. */

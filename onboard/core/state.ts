@@ -4,7 +4,7 @@
  */
 import { assert } from '../../messages/assert.ts';
 import type { Mission } from '../../messages/mission.ts';
-import { startEstimator, type CurrentAnswer, type Estimator, type PositionAnswer } from './estimator.ts';
+import { startEstimator, type BiasAnswer, type CurrentAnswer, type Estimator } from './estimator.ts';
 import { startGuidance, type Guidance, type GuidanceInput, type GuidanceOutput } from './guidance.ts';
 import { makeLoop, pointAt, type Loop } from './loop.ts';
 import { startNoteSharing, type NoteSharing } from './share-notes.ts';
@@ -32,13 +32,12 @@ export interface State {
   readonly sharing: NoteSharing;
   readonly talk: Talk;
   readonly table: LoopTable;
-  readonly position: PositionAnswer;
   /** The current at the own place with its covariance, and at one point of the loop. */
   readonly here: CurrentAnswer;
   readonly there: CurrentAnswer;
   readonly meanHere: Float64Array;
   readonly meanPoint: Float64Array;
-  readonly bias: { compassBiasRad: number; compassBiasSigmaRad: number; logScale: number; logScaleSigma: number };
+  readonly bias: BiasAnswer;
   readonly guidanceIn: GuidanceInput;
   readonly guidanceOut: GuidanceOutput;
 }
@@ -80,7 +79,6 @@ export function start(mission: Mission): State {
     sharing: startNoteSharing(selfIndex, mission.fleet.length),
     talk: startTalk(mission, selfIndex),
     table,
-    position: { eastM: 0, northM: 0, varEastM2: 0, covEastNorthM2: 0, varNorthM2: 0 },
     here: noCurrent(),
     there: noCurrent(),
     meanHere: new Float64Array(2),

@@ -10,7 +10,7 @@ import { degFromRad, headingDegFromRad, radFromDeg } from '../../messages/angles
 import { AGENT_STATES, encodeFrame, hexFromBytes } from '../../messages/frame.ts';
 import type { Sense } from '../../messages/sense.ts';
 import type { Estimate, HeardFate, MapMessage, Steer } from '../../messages/steer.ts';
-import { biasNow, currentAt, currentMeanAt, positionNow, reckonTick, takeNote, workEstimator } from './estimator.ts';
+import { biasNow, currentAt, currentMeanAt, reckonTick, takeNote, workEstimator } from './estimator.ts';
 import { guide, hearPeer, isBatteryLow } from './guidance.ts';
 import { noteCount } from './note-log.ts';
 import { chooseNote, hearHaves, ownHaves } from './share-notes.ts';
@@ -75,29 +75,32 @@ function isWholeMinute(state: State, tick: number): boolean {
 
 /** Position, biases, the current here each tick; the current along the loop each minute. */
 function renewPicture(state: State, sense: Sense, minute: boolean): void {
-  const { estimator, position, table, here, meanHere } = state;
-  positionNow(estimator, position);
+  const { estimator, table, meanHere, there } = state;
+  const { position } = estimator;
   biasNow(estimator, state.bias);
-  currentMeanAt(estimator, position.eastM, position.northM, sense.at_s, meanHere);
+  const here = { eastM: position.eastM, northM: position.northM, atS: sense.at_s };
+  currentMeanAt(estimator, here, meanHere);
   if (sense.tick % SIGMA_POINT_TICKS === 0) {
     const point = (sense.tick / SIGMA_POINT_TICKS) % MAP_POINTS;
-    currentAt(estimator, table.pointEastM[point]!, table.pointNorthM[point]!, sense.at_s, state.there);
-    table.sigmaMps[point] = Math.sqrt(state.there.varEastM2ps2 + state.there.varNorthM2ps2);
+    currentAt(estimator, { eastM: table.pointEastM[point]!, northM: table.pointNorthM[point]!, atS: sense.at_s }, there);
+    table.sigmaMps[point] = Math.sqrt(there.varEastM2ps2 + there.varNorthM2ps2);
   }
   if (sense.tick % SIGMA_HERE_TICKS === 0) {
-    currentAt(estimator, position.eastM, position.northM, sense.at_s, here);
+    currentAt(estimator, here, state.here);
   }
   if (!minute) return;
   const mean = state.meanPoint;
   for (let point = 0; point < MAP_POINTS; point++) {
-    currentMeanAt(estimator, table.pointEastM[point]!, table.pointNorthM[point]!, sense.at_s, mean);
+    const place = { eastM: table.pointEastM[point]!, northM: table.pointNorthM[point]!, atS: sense.at_s };
+    currentMeanAt(estimator, place, mean);
     table.currentEastMps[point] = mean[0]!;
     table.currentNorthMps[point] = mean[1]!;
   }
 }
 
 function steerTheVehicle(state: State, sense: Sense): void {
-  const { guidanceIn: input, position, here, bias, mission } = state;
+  const { guidanceIn: input, here, bias, mission } = state;
+  const { position } = state.estimator;
   input.atS = sense.at_s;
   input.eastM = position.eastM;
   input.northM = position.northM;
@@ -118,7 +121,8 @@ function steerTheVehicle(state: State, sense: Sense): void {
 
 /** The frame for the coming slot, as hex. */
 function say(state: State, atS: number): string {
-  const { talk, sharing, estimator, position, guidanceIn, guidanceOut, mission } = state;
+  const { talk, sharing, estimator, guidanceIn, guidanceOut, mission } = state;
+  const { position } = estimator;
   const sequence = nextSequence(talk);
   const alone = mission.sharing === 'solo';
   return hexFromBytes(encodeFrame({
@@ -138,7 +142,8 @@ function say(state: State, atS: number): string {
 }
 
 function estimateOf(state: State): Estimate {
-  const { position, here, meanHere, bias } = state;
+  const { here, meanHere, bias } = state;
+  const { position } = state.estimator;
   return {
     east_m: position.eastM,
     north_m: position.northM,

@@ -26,7 +26,7 @@ const gridNote: fc.Arbitrary<Note> = fc.record({
   endNorthM: whole(-2047, 2047).map((code) => code * 2),
   sagM: whole(-31, 31).map((code) => code * 2),
   chained: fc.boolean(),
-  fixSigmaM: whole(0, 15).map((code) => 0.5 * 2 ** (code / 2)),
+  fixSigmaM: whole(0, 15).map((code) => 5 * 2 ** ((code - 7) / 2)),
   skipped: whole(0, 7),
 });
 
@@ -56,7 +56,7 @@ function slowFrame(frame: Frame): string {
     bits(12, Math.round(note.currentEastMps * 1000)), bits(12, Math.round(note.currentNorthMps * 1000)),
     bits(12, note.startEastM / 2), bits(12, note.startNorthM / 2), bits(12, note.endEastM / 2),
     bits(12, note.endNorthM / 2), bits(6, note.sagM / 2), note.chained ? '1' : '0',
-    bits(4, Math.round(Math.log2(note.fixSigmaM / 0.5) * 2)), bits(3, note.skipped),
+    bits(4, Math.round(Math.log2(note.fixSigmaM / 5) * 2) + 7), bits(3, note.skipped),
   ].join('');
   const body = [
     bits(3, 1), bits(4, frame.senderIndex), bits(8, frame.sequence), bits(12, frame.timeMod4096S),
@@ -74,7 +74,7 @@ const GOLDEN_FRAME: Frame = {
   note: {
     originIndex: 4, number: 19, endS: 5701, durationS: 300, currentEastMps: -0.123, currentNorthMps: 0.256,
     startEastM: -400, startNorthM: 446, endEastM: -584, endNorthM: 136, sagM: -20, chained: true,
-    fixSigmaM: 0.5 * 2 ** 3.5, skipped: 0,
+    fixSigmaM: 5, skipped: 0,
   },
   haves: [18, 19, 19, 17, 19],
 };

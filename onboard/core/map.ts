@@ -1,0 +1,207 @@
+/**
+ * The current map: a filter over the notes in the log, always as if they had come in canonical order.
+ *
+ * A note that is the last in order is taken in at once. A late one rewinds a second filter to the
+ * nearest checkpoint before it, which then works its way back through the log, a bounded number of
+ * notes a tick; until it is through, the first filter answers. So the same notes give the same map to
+ * the last bit, whatever order they came in, once nothing is pending.
+ */
+import type { Note } from '../../messages/frame.ts';
+import { modesAt } from './basis.ts';
+import {
+  TIDE_AT, copyFilter, resetFilter, startFilter, transition, type Filter, type FilterPlan,
+} from './filter.ts';
+import { addNote, type NoteLog } from './note-log.ts';
+import { takeIn } from './take-note.ts';
+
+const CHECKPOINTS_MAX = 10;
+const CHECKPOINT_EVERY_S = 180;
+/** Work of one tick, in covariance entries: a dozen notes for five vehicles, four for sixteen. */
+const ENTRIES_PER_TICK = 60_000;
+
+export interface CurrentMap {
+  readonly plan: FilterPlan;
+  readonly log: NoteLog;
+  /** Answers all questions. */
+  readonly active: Filter;
+  /** Works through late notes. */
+  readonly working: Filter;
+  /** Earlier states of the canonical line, oldest first; the first `counts.checkpoints` are filled. */
+  readonly checkpoints: Filter[];
+  readonly counts: { checkpoints: number; isBehind: boolean };
+  readonly scratch: { readonly east: Float64Array; readonly north: Float64Array; readonly gain: Float64Array };
+}
+
+export function startMap(plan: FilterPlan, log: NoteLog): CurrentMap {
+  return {
+    plan,
+    log,
+    active: startFilter(plan),
+    working: startFilter(plan),
+    checkpoints: Array.from({ length: CHECKPOINTS_MAX }, () => startFilter(plan)),
+    counts: { checkpoints: 0, isBehind: false },
+    scratch: {
+      east: new Float64Array(plan.size), north: new Float64Array(plan.size), gain: new Float64Array(plan.size),
+    },
+  };
+}
+
+/** Adds a note to log and map; false if it is held already or its number was declared skipped. */
+export function takeIntoMap(map: CurrentMap, note: Note): boolean {
+  const { log, active, counts } = map;
+  const place = addNote(log, note);
+  if (place < 0) return false;
+  const isLast = place === log.counts.total - 1;
+  if (isLast && !counts.isBehind) {
+    takeIn(map.plan, active, note);
+    keepCheckpoint(map, active);
+    return true;
+  }
+  rewind(map, place);
+  if (isLast) takeIn(map.plan, active, note);
+  return true;
+}
+
+/** Sends the working filter back so that it will meet the note at `place`. */
+function rewind(map: CurrentMap, place: number): void {
+  const { counts, working, checkpoints } = map;
+  while (counts.checkpoints > 0 && checkpoints[counts.checkpoints - 1]!.clock.cursor > place) counts.checkpoints -= 1;
+  if (counts.isBehind && working.clock.cursor <= place) return;
+  counts.isBehind = true;
+  if (counts.checkpoints > 0) copyFilter(checkpoints[counts.checkpoints - 1]!, working);
+  else resetFilter(map.plan, working);
+}
+
+/** A bounded share of pending work. */
+export function workMap(map: CurrentMap): void {
+  const { counts, working, log, plan } = map;
+  if (!counts.isBehind) return;
+  const budget = Math.max(1, Math.floor(ENTRIES_PER_TICK / (plan.size * plan.size)));
+  for (let done = 0; done < budget && working.clock.cursor < log.counts.total; done++) {
+    takeIn(plan, working, log.ordered[working.clock.cursor]!);
+    keepCheckpoint(map, working);
+  }
+  if (working.clock.cursor < log.counts.total) return;
+  copyFilter(working, map.active);
+  counts.isBehind = false;
+}
+
+/** Keeps a state of the canonical line, if the last one kept is old enough; thins older ones out. */
+function keepCheckpoint(map: CurrentMap, line: Filter): void {
+  const { counts, checkpoints } = map;
+  const last = counts.checkpoints === 0 ? null : checkpoints[counts.checkpoints - 1]!;
+  if (last !== null && line.clock.atS - last.clock.atS < CHECKPOINT_EVERY_S) return;
+  if (counts.checkpoints === CHECKPOINTS_MAX) dropOne(map, line.clock.atS);
+  copyFilter(line, checkpoints[counts.checkpoints]!);
+  counts.checkpoints += 1;
+}
+
+/** Drops the checkpoint whose loss widens its gap least for its age: spacing grows with age. */
+function dropOne(map: CurrentMap, nowS: number): void {
+  const { counts, checkpoints } = map;
+  let drop = 0;
+  let least = Infinity;
+  for (let index = 0; index < counts.checkpoints - 1; index++) {
+    const beforeS = index === 0 ? checkpoints[0]!.clock.atS - CHECKPOINT_EVERY_S : checkpoints[index - 1]!.clock.atS;
+    const afterS = checkpoints[index + 1]!.clock.atS;
+    const widened = (afterS - beforeS) / (nowS - beforeS);
+    if (widened < least) {
+      least = widened;
+      drop = index;
+    }
+  }
+  const freed = checkpoints[drop]!;
+  for (let index = drop; index < counts.checkpoints - 1; index++) checkpoints[index] = checkpoints[index + 1]!;
+  checkpoints[counts.checkpoints - 1] = freed;
+  counts.checkpoints -= 1;
+}
+
+/** Mean and covariance of the current at a place and time. Caller-owned. */
+export interface CurrentAnswer {
+  eastMps: number;
+  northMps: number;
+  varEastM2ps2: number;
+  covEastNorthM2ps2: number;
+  varNorthM2ps2: number;
+}
+
+/** The mean current at any place and time, written to `out` as east, north. */
+export function meanCurrentAt(map: CurrentMap, at: { eastM: number; northM: number; atS: number }, out: Float64Array): void {
+  const { plan, active } = map;
+  const { mean } = active;
+  const { modes } = plan.scratch;
+  const f = transition(plan.modePerS, at.atS - filterTimeS(active, at.atS));
+  const cos = Math.cos(plan.tidePerS * at.atS);
+  const sin = Math.sin(plan.tidePerS * at.atS);
+  let east = mean[0]! + cos * mean[TIDE_AT]! + sin * mean[TIDE_AT + 1]!;
+  let north = mean[1]! + cos * mean[TIDE_AT + 2]! + sin * mean[TIDE_AT + 3]!;
+  modesAt(plan.basis, at.eastM, at.northM, modes);
+  for (let mode = 0; mode < plan.basis.count; mode++) {
+    const value = f.valueOfValue * mean[plan.valueAt + mode]! + f.valueOfRate * mean[plan.rateAt + mode]!;
+    east += value * modes.east[mode]!;
+    north += value * modes.north[mode]!;
+  }
+  out[0] = east;
+  out[1] = north;
+}
+
+/** The time of the filter's state, or `elseS` before any note. */
+export function filterTimeS(filter: Filter, elseS: number): number {
+  return filter.clock.cursor === 0 ? elseS : filter.clock.atS;
+}
+
+/** Mean and covariance of the current at any place and time. */
+export function currentWithSpread(map: CurrentMap, at: { eastM: number; northM: number; atS: number }, out: CurrentAnswer): void {
+  const { plan, active, scratch } = map;
+  const { modes } = plan.scratch;
+  const { count } = plan.basis;
+  const mean = scratch.gain;
+  meanCurrentAt(map, at, mean);
+  out.eastMps = mean[0]!;
+  out.northMps = mean[1]!;
+  const f = transition(plan.modePerS, at.atS - filterTimeS(active, at.atS));
+  const { east, north } = scratch;
+  east.fill(0);
+  north.fill(0);
+  east[0] = 1;
+  north[1] = 1;
+  east[TIDE_AT] = Math.cos(plan.tidePerS * at.atS);
+  east[TIDE_AT + 1] = Math.sin(plan.tidePerS * at.atS);
+  north[TIDE_AT + 2] = east[TIDE_AT]!;
+  north[TIDE_AT + 3] = east[TIDE_AT + 1]!;
+  let newEast = 0;
+  let newCross = 0;
+  let newNorth = 0;
+  for (let mode = 0; mode < count; mode++) {
+    east[plan.valueAt + mode] = f.valueOfValue * modes.east[mode]!;
+    north[plan.valueAt + mode] = f.valueOfValue * modes.north[mode]!;
+    east[plan.rateAt + mode] = f.valueOfRate * modes.east[mode]!;
+    north[plan.rateAt + mode] = f.valueOfRate * modes.north[mode]!;
+    newEast += modes.east[mode]! ** 2;
+    newCross += modes.east[mode]! * modes.north[mode]!;
+    newNorth += modes.north[mode]! ** 2;
+  }
+  const fresh = f.newVariance * plan.modeSigmaMps ** 2;
+  const extent = plan.biasAt;
+  out.varEastM2ps2 = spread(active, plan.size, { a: east, b: east, extent }) + fresh * newEast;
+  out.covEastNorthM2ps2 = spread(active, plan.size, { a: east, b: north, extent }) + fresh * newCross;
+  out.varNorthM2ps2 = spread(active, plan.size, { a: north, b: north, extent }) + fresh * newNorth;
+}
+
+/** a' P b over the first `extent` states. */
+export function spread(
+  filter: Filter, size: number, of: { a: Float64Array; b: Float64Array; extent: number },
+): number {
+  const { a, b, extent } = of;
+  const { covariance } = filter;
+  let total = 0;
+  for (let row = 0; row < extent; row++) {
+    const weight = a[row]!;
+    if (weight === 0) continue;
+    const start = row * size;
+    let sum = 0;
+    for (let column = 0; column < extent; column++) sum += covariance[start + column]! * b[column]!;
+    total += weight * sum;
+  }
+  return total;
+}

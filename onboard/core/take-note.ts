@@ -1,0 +1,87 @@
+/**
+ * How the filter takes in one note.
+ *
+ * A note is m = (F2 − F1 − D)/T, D the dead-reckoned way through the water. With W the true one,
+ * D = W + s W + β W⊥ (W⊥: W turned a right angle clockwise), so to first order
+ *
+ *   m = mean current over the path + (e2 − e1)/T − s W/T − β W⊥/T + white,   W/T = (end − start)/T − m.
+ *
+ * Two notes in a row share a fix: the old end error is the new start error, kept in the state. Where
+ * the chain is broken, or its earlier note is missing, the start error is a fresh unknown.
+ */
+import type { Note } from '../../messages/frame.ts';
+import { modesAt } from './basis.ts';
+import { TIDE_AT, moveState, predict, renewState, update, type Filter, type FilterPlan } from './filter.ts';
+
+/** Points along a note's path, with Gauss-Legendre weights: five are exact to the ninth power. */
+const PATH_POINTS = [0.04691007703066802, 0.23076534494715845, 0.5, 0.7692346550528415, 0.9530899229693319] as const;
+const PATH_WEIGHTS = [0.11846344252809454, 0.23931433524968324, 0.28444444444444444, 0.23931433524968324, 0.11846344252809454] as const;
+
+/** Writes the rows of the mean current over a note's path, for the state at the note's end. */
+function writePathRows(plan: FilterPlan, note: Note): void {
+  const { modes, rowEast, rowNorth } = plan.scratch;
+  rowEast.fill(0);
+  rowNorth.fill(0);
+  rowEast[0] = 1;
+  rowNorth[1] = 1;
+  const chordEast = note.endEastM - note.startEastM;
+  const chordNorth = note.endNorthM - note.startNorthM;
+  const chordM = Math.sqrt(chordEast * chordEast + chordNorth * chordNorth);
+  const rightEast = chordM > 0 ? chordNorth / chordM : 0;
+  const rightNorth = chordM > 0 ? -chordEast / chordM : 0;
+  for (let point = 0; point < PATH_POINTS.length; point++) {
+    const share = PATH_POINTS[point]!;
+    const weight = PATH_WEIGHTS[point]!;
+    const bulgeM = 4 * share * (1 - share) * note.sagM;
+    const eastM = note.startEastM + share * chordEast + bulgeM * rightEast;
+    const northM = note.startNorthM + share * chordNorth + bulgeM * rightNorth;
+    const beforeEndS = (1 - share) * note.durationS;
+    const angle = plan.tidePerS * (note.endS - beforeEndS);
+    rowEast[TIDE_AT]! += weight * Math.cos(angle);
+    rowEast[TIDE_AT + 1]! += weight * Math.sin(angle);
+    modesAt(plan.basis, eastM, northM, modes);
+    for (let mode = 0; mode < plan.basis.count; mode++) {
+      rowEast[plan.valueAt + mode]! += weight * modes.east[mode]!;
+      rowNorth[plan.valueAt + mode]! += weight * modes.north[mode]!;
+      rowEast[plan.rateAt + mode]! -= weight * beforeEndS * modes.east[mode]!;
+      rowNorth[plan.rateAt + mode]! -= weight * beforeEndS * modes.north[mode]!;
+    }
+  }
+  rowNorth[TIDE_AT + 2] = rowEast[TIDE_AT]!;
+  rowNorth[TIDE_AT + 3] = rowEast[TIDE_AT + 1]!;
+}
+
+/** Takes in one note whose end is not before the filter's time. */
+export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
+  const { size, newFixAt } = plan;
+  const { rowEast, rowNorth } = plan.scratch;
+  predict(plan, filter, Math.max(note.endS, filter.clock.atS));
+  const origin = note.originIndex;
+  const fix = plan.fixAt + 2 * origin;
+  const bias = plan.biasAt + 2 * origin;
+  const isChained = note.chained && filter.lastNumber[origin] === note.number - 1 - note.skipped;
+  if (!isChained) {
+    renewState(filter, size, fix, note.fixSigmaM);
+    renewState(filter, size, fix + 1, note.fixSigmaM);
+  }
+  renewState(filter, size, newFixAt, note.fixSigmaM);
+  renewState(filter, size, newFixAt + 1, note.fixSigmaM);
+  writePathRows(plan, note);
+  const waterEast = (note.endEastM - note.startEastM) / note.durationS - note.currentEastMps;
+  const waterNorth = (note.endNorthM - note.startNorthM) / note.durationS - note.currentNorthMps;
+  rowEast[bias] = -waterNorth;
+  rowNorth[bias] = waterEast;
+  rowEast[bias + 1] = -waterEast;
+  rowNorth[bias + 1] = -waterNorth;
+  rowEast[fix] = -1 / note.durationS;
+  rowNorth[fix + 1] = -1 / note.durationS;
+  rowEast[newFixAt] = 1 / note.durationS;
+  rowNorth[newFixAt + 1] = 1 / note.durationS;
+  const variance = plan.noteSigmaMps ** 2;
+  update(plan, filter, rowEast, { value: note.currentEastMps, variance });
+  update(plan, filter, rowNorth, { value: note.currentNorthMps, variance });
+  moveState(filter, size, newFixAt, fix);
+  moveState(filter, size, newFixAt + 1, fix + 1);
+  filter.lastNumber[origin] = note.number;
+  filter.clock.cursor += 1;
+}
