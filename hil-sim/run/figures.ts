@@ -28,15 +28,16 @@ export function marginFigure(margin: number | null, unit: string): string {
   return `${margin < 0 ? '−' : '+'}${figure(Math.abs(margin), unit)}`;
 }
 
-/** A length of time: `41 min`, `41 min 30 s`, `1 h 05 min`. */
+/** A length of time: `41 min`, `41 min 30 s`, `1 h`, `1 h 05 min`. */
 export function span(seconds: number): string {
   const whole = Math.round(Math.abs(seconds));
   const h = Math.floor(whole / 3600);
   const min = Math.floor((whole % 3600) / 60);
   const s = whole % 60;
-  if (h > 0) return `${h} h ${String(min).padStart(2, '0')} min${s === 0 ? '' : ` ${String(s).padStart(2, '0')} s`}`;
-  if (min > 0) return s === 0 ? `${min} min` : `${min} min ${String(s).padStart(2, '0')} s`;
-  return `${s} s`;
+  const two = (value: number): string => String(value).padStart(2, '0');
+  const rest = s === 0 ? '' : ` ${two(s)} s`;
+  if (h > 0) return min === 0 && s === 0 ? `${h} h` : `${h} h ${two(min)} min${rest}`;
+  return min > 0 ? `${min} min${rest}` : `${s} s`;
 }
 
 /** A moment of the run since its start, `2:31:00`. */

@@ -117,8 +117,11 @@ export function verdictSentence(outcome: Outcome): string {
   const broken = limits.filter((limit) => !limit.met);
   const count = (number: number): string => `${number} limit${number === 1 ? '' : 's'}`;
   if (broken.length === 0) {
-    const tight = limits.reduce((least, limit) => (marginShare(limit) < marginShare(least) ? limit : least));
     const all = limits.length === 1 ? 'the one limit is' : `all ${count(limits.length)} are`;
+    // A limit of zero has no room to speak of, and one without a value none to compare.
+    const roomy = limits.filter((limit) => limit.limit !== 0 && limit.value !== null);
+    if (roomy.length === 0) return `Pass: ${all} met.`;
+    const tight = roomy.reduce((least, limit) => (marginShare(limit) < marginShare(least) ? limit : least));
     return `Pass: ${all} met. Least room: ${tight.name} ${figure(tight.value, tight.unit)}, `
       + `${bound(tight)} ${figure(tight.limit, tight.unit)}.`;
   }

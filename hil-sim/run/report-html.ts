@@ -7,6 +7,16 @@ export function html(text: string): string {
   return text.replace(/&/g, '&amp;').replace(/</g, '&lt;').replace(/>/g, '&gt;').replace(/"/g, '&quot;');
 }
 
+/** A figure that does not break at its spaces. */
+export function whole(text: string): string {
+  return html(text).replace(/ /g, '&nbsp;');
+}
+
+/** Ticks of metres: no thousands marks, a real minus sign. */
+export function plainTick(value: number): string {
+  return value < 0 ? `−${-value}` : String(value);
+}
+
 /** A fraction of a pixel finer than this cannot be seen; longer numbers only make the file large. */
 const LONG_FRACTION = /(\.\d)\d+/g;
 

@@ -1,6 +1,6 @@
 /** The limits as a ruled list: what was measured, what is allowed, and the margin as a bar. */
 import { figure, marginFigure } from './figures.ts';
-import { html } from './report-html.ts';
+import { html, whole } from './report-html.ts';
 import { isLeast, marginShare } from './limits.ts';
 import { MEASURES, type MeasureName } from './measures.ts';
 import { bound, worstWords, type Outcome } from './outcome.ts';
@@ -15,7 +15,7 @@ const MEASURE_OF: Readonly<Record<string, MeasureName>> = {
 export function limitsSection(outcome: Outcome): string {
   if (outcome.limits.length === 0) return '<h2>Limits</h2><p>The trial sets no limits; nothing was judged.</p>';
   return '<h2>Limits</h2>'
-    + '<p class="says">Bars show the margin as a share of the limit, ±100 % at most: to the right of the line is room, '
+    + '<p class="says">Bars show the margin as a share of the limit, ±100&nbsp;% at most: to the right of the line is room, '
     + 'hatched to the left is what is lacking.</p>'
     + `<ol class="limits">${outcome.limits.map(row).join('')}</ol>`;
 }
@@ -25,10 +25,10 @@ function row(limit: Limit): string {
   const where = worstWords(limit.worst);
   return `<li class="limit ${limit.met ? 'met' : 'unmet'}">`
     + `<span class="name"><b>${html(limit.name)}</b><br><span class="says">${html(MEASURES[measure].says)}</span></span>`
-    + `<span class="value">${figure(limit.value, limit.unit)}</span>`
-    + `<span class="allowed">${bound(limit)} ${figure(limit.limit, limit.unit)}</span>`
+    + `<span class="value">${whole(figure(limit.value, limit.unit))}</span>`
+    + `<span class="allowed">${bound(limit)} ${whole(figure(limit.limit, limit.unit))}</span>`
     + bar(limit)
-    + `<span class="margin">${marginFigure(limit.margin, limit.unit)}</span>`
+    + `<span class="margin">${whole(marginFigure(limit.margin, limit.unit))}</span>`
     + `<span class="word">${limit.met ? 'met' : 'not met'}`
     + `${where === '' ? '' : `<br><span class="says">${isLeast(limit.name) ? 'least' : 'worst'}: ${html(where)}</span>`}</span></li>`;
 }

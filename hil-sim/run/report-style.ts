@@ -33,16 +33,17 @@ body {
   margin: 0 auto; padding: 1.5rem 1.25rem 3rem; max-width: 68rem; background: var(--paper); color: var(--ink);
   font: 1rem/1.45 system-ui, -apple-system, "Segoe UI", Roboto, "Noto Sans", sans-serif; font-variant-numeric: tabular-nums;
 }
-h1 { font-size: 1.55rem; line-height: 1.25; margin: 0 0 .5rem; max-width: 46rem; font-weight: 650; text-wrap: balance; }
+h1 { font-size: 1.55rem; line-height: 1.25; margin: 0 0 .5rem; max-width: 54rem; font-weight: 650; text-wrap: pretty; }
 h2 { font-size: 1.1rem; margin: 2.2rem 0 .5rem; border-top: 2px solid var(--ink); padding-top: .45rem; font-weight: 650; }
 p { margin: .3rem 0; max-width: 46rem; }
 .quiet, figcaption, .says { color: var(--quiet); }
-.says, figcaption, footer { font-size: .875rem; }
+.says, figcaption, footer { font-size: .875rem; font-weight: 400; line-height: 1.4; }
+figcaption { margin-top: .35rem; }
 code { font-family: ui-monospace, Menlo, Consolas, monospace; font-size: .9em; overflow-wrap: anywhere; }
 ol.limits { list-style: none; margin: 0; padding: 0; }
 .limit {
   display: grid; align-items: center; column-gap: 1rem; row-gap: .1rem; padding: .45rem 0; border-bottom: 1px solid var(--rule);
-  grid-template-columns: minmax(10rem, 1.5fr) 6.5rem 8.5rem minmax(9rem, 1.2fr) 6.5rem minmax(8rem, 1fr);
+  grid-template-columns: minmax(11rem, 1.6fr) 7rem 9.5rem minmax(7rem, 1fr) 7.5rem minmax(8.5rem, 1fr);
 }
 .limit .value, .limit .margin { text-align: right; }
 .limit .value { font-weight: 650; }
@@ -60,7 +61,8 @@ figure svg text { font-family: system-ui, -apple-system, "Segoe UI", Roboto, "No
 .mark { width: 1em; height: 1em; vertical-align: -.12em; margin-right: .3em; }
 ul.legend { list-style: none; display: flex; flex-wrap: wrap; gap: .2rem 1.2rem; margin: .4rem 0 .8rem; padding: 0; }
 ul.keys { list-style: none; margin: .3rem 0; padding: 0; }
-ul.keys li { margin: .25rem 0; }
+ul.keys li { margin: .25rem 0; padding-left: 2.9em; text-indent: -2.9em; }
+ul.keys .mark { margin: 0 1.15em 0 .75em; }
 .key { width: 2.4em; height: .8em; vertical-align: -.05em; margin-right: .5em; overflow: visible; }
 .scroll { overflow-x: auto; }
 table { border-collapse: collapse; width: 100%; font-size: .925rem; }

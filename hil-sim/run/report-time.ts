@@ -28,46 +28,48 @@ interface Lines {
   readonly fleet?: { readonly values: Float64Array; readonly stepS: number };
   readonly domain?: [number, number];
   readonly reverse?: boolean;
+  /** Without the line of forming up. */
+  readonly isState?: boolean;
   readonly caption: string;
 }
 
 export function timeSection(input: ReportInput): string {
   const { report, trial } = input;
   const { binned, sampled } = report.series;
-  const { limits } = input.trial;
-  const level = (at: number | undefined, words: string): { at: number; words: string }[] =>
-    (at === undefined ? [] : [{ at, words }]);
+  const { limits } = trial;
+  const level = (limit: number | undefined, what: string, unit: string): { at: number; words: string }[] =>
+    (limit === undefined ? [] : [{ at: unit === '' ? 100 * limit : limit, words: `${what}: at most ${figure(limit, unit)}` }]);
   const plots: Lines[] = [
     {
       heading: 'Distance from the loop', label: 'm', values: binned.crossTrack,
-      levels: [...level(limits.crossTrackRms, 'limit of the rms'), ...level(limits.crossTrackMax, 'limit of the greatest')],
+      levels: [...level(limits.crossTrackRms, 'rms', 'm'), ...level(limits.crossTrackMax, 'greatest', 'm')],
       caption: `${rmsWords(input, 'crossTrackRms')}; greatest ${valueWords(input, 'crossTrackMax')}.`,
     },
     {
       heading: 'Gap error over target gap', label: '%', values: binned.gap, scale: 100,
-      levels: level(limits.gapRms === undefined ? undefined : 100 * limits.gapRms, 'limit of the rms'),
+      levels: level(limits.gapRms, 'rms', ''),
       caption: `${rmsWords(input, 'gapRms')}.`,
     },
     {
       heading: 'Error of the stated current', label: 'm/s', values: binned.current,
-      levels: level(limits.currentRms, 'limit of the rms'),
+      levels: level(limits.currentRms, 'rms', 'm/s'),
       fleet: { values: report.maps.errorMps, stepS: 60 },
       caption: `At the own place: ${rmsWords(input, 'currentRms')}. Heavy line, maps round the whole loop: `
         + `${rmsWords(input, 'mapRms')}; spread between maps ${valueWords(input, 'mapSpread')}.`,
     },
     {
       heading: 'Error of the stated position', label: 'm', values: binned.position,
-      levels: level(limits.positionRms, 'limit of the rms'),
+      levels: level(limits.positionRms, 'rms', 'm'),
       caption: `${rmsWords(input, 'positionRms')}.`,
     },
     {
-      heading: 'Depth', label: 'm below the surface', values: sampled.depth, reverse: true,
+      heading: 'Depth', label: 'm below the surface', values: sampled.depth, reverse: true, isState: true,
       levels: [{ at: trial.mission.depth, words: 'depth of the loop' }],
       caption: `Closest to each other within 5 m of depth: ${valueWords(input, 'separationMin')}.`,
     },
     {
-      heading: 'Charge left', label: '%', values: sampled.battery, scale: 100, domain: [0, 100],
-      caption: `Energy used by the fleet: ${valueWords(input, 'energy_Wh')}.`,
+      heading: 'Charge left', label: '%', values: sampled.battery, scale: 100, domain: [0, 100], isState: true,
+      caption: `Energy used by the fleet: ${figure(report.values.energy_Wh, 'Wh')}, most by ${html(report.worst.energy_Wh.vehicle!)}.`,
     },
   ];
   const legend = trial.fleet.vehicles.map((vehicle, index) => `<li>${markPicture(index)}${html(vehicle.name)}</li>`).join('');
@@ -162,7 +164,7 @@ function linesPlot(input: ReportInput, lines: Lines): string {
   ]);
   return drawing(`${lines.heading} over time, ${lines.label}`, {
     ...frame(input, { label: lines.label, domain, reverse: lines.reverse ?? false }),
-    marks: [...vehicles, ...fleet, ...formedUpMarks(input), ...levels],
+    marks: [...vehicles, ...fleet, ...(lines.isState === true ? [] : formedUpMarks(input)), ...levels],
   });
 }
 

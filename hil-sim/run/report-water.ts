@@ -3,7 +3,7 @@ import * as Plot from '@observablehq/plot';
 import { clock } from './figures.ts';
 import { pictureOf, type MapPoint } from './maps.ts';
 import type { MeasureReport } from './measure-report.ts';
-import { drawing, figureOf, html } from './report-html.ts';
+import { drawing, figureOf, html, plainTick } from './report-html.ts';
 import { markOf, markPicture } from './report-marks.ts';
 import type { ReportInput } from './report.ts';
 
@@ -24,7 +24,9 @@ interface Bounds {
 export function waterSection(input: ReportInput): string {
   const { report } = input;
   const minutes = mapMinutes(report);
-  const currents = minutes.map((minute) => currentFigure(input, minute)).join('');
+  const pictures = minutes.map((minute) => pictureOf(report.maps, minute, POINT_STEP)!);
+  const most = Math.max(0.02, ...pictures.flat().map(longest));
+  const currents = minutes.map((minute, place) => currentFigure(input, { minute, picture: pictures[place]!, most })).join('');
   return `<h2>Water</h2><div class="lead">${tracksFigure(input)}${keys(input)}</div>`
     + (currents === ''
       ? '<p>No vehicle stated a map, so there is none to compare with the water.</p>'
@@ -65,8 +67,8 @@ function axes(bounds: Bounds, size: number): Plot.PlotOptions {
   return {
     width: size, height: size, marginLeft: 56, marginBottom: 40, marginTop: 26, marginRight: 10,
     style: { fontSize: '13px', background: 'none', color: INK },
-    x: { domain: bounds.e, label: 'east of the datum, m', labelArrow: 'none', labelAnchor: 'center', ticks: 5 },
-    y: { domain: bounds.n, label: 'north of the datum, m', labelArrow: 'none', ticks: 5 },
+    x: { domain: bounds.e, label: 'east of the datum, m', labelArrow: 'none', labelAnchor: 'center', ticks: 5, tickFormat: plainTick },
+    y: { domain: bounds.n, label: 'north of the datum, m', labelArrow: 'none', ticks: 5, tickFormat: plainTick },
   };
 }
 
@@ -98,7 +100,7 @@ function tracksFigure({ trial, report }: ReportInput): string {
     ];
   });
   const svg = drawing(`Tracks of ${vehicles.length} vehicles about the loop, north up`, {
-    ...axes(bounds, 560),
+    ...axes(bounds, 460),
     marks: [
       Plot.line(circle(keepIn.centre, keepIn.radius), { ...line, stroke: INK, strokeWidth: 1, strokeDasharray: '1 4' }),
       ...keepOut.map((area) => Plot.line(circle(area.centre, area.radius), { ...line, stroke: 'var(--lack)', strokeWidth: 2 })),
@@ -107,19 +109,20 @@ function tracksFigure({ trial, report }: ReportInput): string {
       Plot.text([{ e: recovery.east, n: recovery.north }], { x: 'e', y: 'n', text: () => '✕ recovery', textAnchor: 'start', dx: -4, fill: INK, clip: true }),
     ],
   });
-  const keepInText = `keep-in is a circle of ${Math.round(keepIn.radius)} m about east ${Math.round(keepIn.centre.east)} m, `
-    + `north ${Math.round(keepIn.centre.north)} m`;
+  const place = (at: { east: number; north: number }): string =>
+    `east ${plainTick(Math.round(at.east))} m, north ${plainTick(Math.round(at.north))} m`;
+  const keepInText = `keep-in is a circle of ${Math.round(keepIn.radius)} m about ${place(keepIn.centre)}`;
   return figureOf('Tracks, true positions, north up', svg,
-    `The loop is ${Math.round(report.track.lengthM)} m long, travelled ${trial.mission.loop.turn}; ${keepInText}.`);
+    `The loop is ${Math.round(report.track.lengthM)} m long, travelled ${trial.mission.loop.turn}; ${keepInText}; recovery is at ${place(recovery)}.`);
 }
 
 /** What the drawings' lines and marks mean. */
 function keys({ trial, report }: ReportInput): string {
   const key = (body: string, words: string): string =>
     `<li><svg class="key" viewBox="0 0 36 12" aria-hidden="true">${body}</svg>${words}</li>`;
-  const energy = (index: number): string => (report.vehicles[index]!.isExcepted ? ' (not counted)' : '');
+  const note = (index: number): string => (report.vehicles[index]!.isExcepted ? ' (not counted)' : '');
   return '<div><ul class="keys">'
-    + trial.fleet.vehicles.map((vehicle, index) => `<li>${markPicture(index)}${html(vehicle.name)}${energy(index)}</li>`).join('')
+    + trial.fleet.vehicles.map((vehicle, index) => `<li>${markPicture(index)}${html(vehicle.name)}${note(index)}</li>`).join('')
     + key('<path d="M0,6H36" stroke="var(--ink)" stroke-width="5" stroke-opacity=".2"/>', 'the loop')
     + key('<path d="M0,6H36" stroke="var(--ink)" stroke-dasharray="1 4"/>', 'keep-in')
     + (trial.mission.keepOut.length > 0 ? key('<path d="M0,6H36" stroke="var(--lack)" stroke-width="2"/>', 'keep-out') : '')
@@ -147,14 +150,20 @@ function scaleSpeed(most: number): number {
   return 0.01;
 }
 
-function currentFigure({ report }: ReportInput, minute: number): string {
-  const picture = pictureOf(report.maps, minute, POINT_STEP)!;
+/** The faster of truth and belief at a point. */
+function longest(point: MapPoint): number {
+  return Math.max(
+    Math.sqrt(point.trueEastMps ** 2 + point.trueNorthMps ** 2), Math.sqrt(point.meanEastMps ** 2 + point.meanNorthMps ** 2),
+  );
+}
+
+/** One drawing of currents; `most` is the fastest in any of them, so that all have one scale. */
+function currentFigure(
+  { report }: ReportInput, { minute, picture, most }: { minute: number; picture: MapPoint[]; most: number },
+): string {
   const loop = loopPoints(report);
   const bounds = boundsOf(loop, 0.75);
   const sideM = bounds.e[1] - bounds.e[0];
-  const most = Math.max(0.02, ...picture.map((point) => Math.max(
-    Math.sqrt(point.trueEastMps ** 2 + point.trueNorthMps ** 2), Math.sqrt(point.meanEastMps ** 2 + point.meanNorthMps ** 2),
-  )));
   const mPerMps = (0.17 * sideM) / most;
   const speed = scaleSpeed(most);
   const from = { e: bounds.e[0] + 0.05 * sideM, n: bounds.n[0] + 0.06 * sideM };
@@ -177,7 +186,7 @@ function currentFigure({ report }: ReportInput, minute: number): string {
     ],
   });
   return figureOf(`Current at ${clock(minute * 60)}`, svg,
-    `Maps against truth ${errorMps.toFixed(3)} m/s rms, against each other ${spreadMps.toFixed(3)} m/s; strongest ${most.toFixed(2)} m/s.`);
+    `Maps against truth ${errorMps.toFixed(3)} m/s rms, against each other ${spreadMps.toFixed(3)} m/s; strongest ${Math.max(...picture.map(longest)).toFixed(2)} m/s.`);
 }
 
 /** A circle of the stated standard deviation about the tip of a believed arrow, as a shape in the plot's own units. */

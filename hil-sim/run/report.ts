@@ -7,7 +7,7 @@ import { figure, span } from './figures.ts';
 import type { MeasureReport } from './measure-report.ts';
 import { MEASURES, MEASURE_NAMES, type VehicleMeasures } from './measures.ts';
 import { exceptSentence, verdictSentence, worstWords, type Outcome } from './outcome.ts';
-import { html } from './report-html.ts';
+import { html, whole } from './report-html.ts';
 import { limitsSection } from './report-limits.ts';
 import { markPicture } from './report-marks.ts';
 import { REPORT_STYLE } from './report-style.ts';
@@ -20,8 +20,21 @@ export interface ReportInput {
   readonly report: MeasureReport;
 }
 
-/** The whole page. */
+/** The whole page; the same input gives the same page. */
 export function renderReport(input: ReportInput): string {
+  return withOwnClips(page(input));
+}
+
+/** The plots count their clip paths over the life of the process; a page counts its own. */
+function withOwnClips(text: string): string {
+  const places = new Map<string, number>();
+  return text.replace(/\bplot-clip-(\d+)/g, (_all, number: string) => {
+    if (!places.has(number)) places.set(number, places.size + 1);
+    return `clip-${places.get(number)}`;
+  });
+}
+
+function page(input: ReportInput): string {
   const { outcome } = input;
   return '<!doctype html>\n<html lang="en"><head><meta charset="utf-8">'
     + '<meta name="viewport" content="width=device-width, initial-scale=1">'
@@ -41,7 +54,7 @@ function opening({ outcome, trial, report }: ReportInput): string {
   const fleet = report.vehicles.length;
   const formUp = report.values.formUp_s;
   const formed = formUp === null ? 'The fleet did not form up' : `The fleet formed up ${formUp === 0 ? 'at once' : `after ${span(formUp)}`}`;
-  return `<h1>${html(verdictSentence(outcome))}</h1>`
+  return `<h1>${html(verdictSentence(outcome)).replace(/(\d) (?=(?:m|m\/s|%|s|min|h|Wh)\b)/g, '$1&nbsp;')}</h1>`
     + `<p>${html(trial.title)}, seed ${trial.seed}: ${fleet} vehicle${fleet === 1 ? '' : 's'}, ${span(trial.duration)}, `
     + `sharing <code>${trial.mission.sharing}</code>. ${formed}.</p>`
     + (outcome.except === undefined ? '' : `<p><b>${html(exceptSentence(outcome.except))}</b></p>`);
@@ -63,7 +76,7 @@ const COLUMNS: readonly { readonly head: string; readonly of: (vehicle: VehicleM
 function vehiclesSection({ report }: ReportInput): string {
   const heads = COLUMNS.map(({ head }) => `<th scope="col">${head}</th>`).join('');
   const rows = report.vehicles.map((vehicle, index) => `<tr><td>${markPicture(index)}${html(vehicle.vehicle)}`
-    + `${vehicle.isExcepted ? ' (not counted)' : ''}</td>${COLUMNS.map(({ of }) => `<td>${of(vehicle)}</td>`).join('')}</tr>`);
+    + `${vehicle.isExcepted ? ' (not counted)' : ''}</td>${COLUMNS.map(({ of }) => `<td>${whole(of(vehicle))}</td>`).join('')}</tr>`);
   return `<h2>Vehicles</h2><div class="scroll"><table><thead><tr><th scope="col">vehicle</th>${heads}</tr></thead>`
     + `<tbody>${rows.join('')}</tbody></table></div>`;
 }
@@ -72,7 +85,7 @@ function measuresSection({ report }: ReportInput): string {
   const rows = MEASURE_NAMES.map((name) => {
     const value = report.values[name];
     return `<tr><td><b>${name}</b> <span class="says">${html(MEASURES[name].says)}</span></td>`
-      + `<td>${figure(value, MEASURES[name].unit)}</td><td>${value === null ? '' : html(worstWords(report.worst[name]))}</td></tr>`;
+      + `<td>${whole(figure(value, MEASURES[name].unit))}</td><td>${value === null ? '' : html(worstWords(report.worst[name]))}</td></tr>`;
   });
   return '<h2>Measures</h2><div class="scroll"><table class="measures"><thead><tr><th scope="col">measure</th><th scope="col">value</th>'
     + `<th scope="col">worst, or least</th></tr></thead><tbody>${rows.join('')}</tbody></table></div>`;
