@@ -1,5 +1,6 @@
 /** `drywake bench`: a trial from its file to a verdict, a run folder and an exit status. */
 import { basename, extname, join } from 'node:path';
+import type { Mission } from '../messages/mission.ts';
 import { benchNameFrom, isBenchName } from '../messages/topics.ts';
 import { startProgress } from './progress.ts';
 import { FolderProblem, openRunFolder, type RunFolder } from './run/folder.ts';
@@ -111,9 +112,44 @@ async function runInFolder(job: Job): Promise<number> {
 
 /** Runs with agents in process or as processes of their own; they are gone when this returns. */
 async function withAgents(
-  job: Job, run: (agents: Agents, signal: AbortSignal | undefined) => Promise<RunResult>,
+  job: Job, run: (agents: Agents, signal: AbortSignal) => Promise<RunResult>,
 ): Promise<RunResult> {
   const missions = missionsOf(job.trial);
-  const { inProcessAgents } = await import('./run/in-process.ts');
-  return await run(inProcessAgents(missions), undefined);
+  const stop = new AbortController();
+  const onSignal = (): void => { stop.abort(); };
+  process.once('SIGINT', onSignal).once('SIGTERM', onSignal);
+  try {
+    if (job.options.inProcess === true) {
+      const { inProcessAgents } = await import('./run/in-process.ts');
+      return await run(inProcessAgents(missions), stop.signal);
+    }
+    return await withProcesses(job, missions, (agents) => run(agents, stop.signal), stop.signal);
+  } finally {
+    process.removeListener('SIGINT', onSignal).removeListener('SIGTERM', onSignal);
+  }
+}
+
+async function withProcesses(
+  job: Job, missions: readonly Mission[], run: (agents: Agents) => Promise<RunResult>, signal: AbortSignal,
+): Promise<RunResult> {
+  const [{ startBroker }, { AgentTrouble, processAgents }] = await Promise.all([
+    import('./shell/broker.ts'), import('./run/processes.ts'),
+  ]);
+  const bus = await startBroker();
+  try {
+    const agents = await processAgents({
+      bus, bench: job.bench, missions, onLine: (vehicle, line) => complain([`${vehicle}: ${line}`]),
+    });
+    signal.addEventListener('abort', () => { agents.fail('stopped by a signal', null); });
+    try {
+      return await run(agents);
+    } finally {
+      await agents.close();
+    }
+  } catch (error) {
+    if (!(error instanceof AgentTrouble)) throw error;
+    return { ok: false, reason: error.message, vehicle: error.vehicle, tick: 0, wallS: 0 };
+  } finally {
+    await bus.close();
+  }
 }

@@ -10,5 +10,6 @@ export function inProcessAgents(missions: readonly Mission[]): Agents {
   const states = missions.map(start);
   return {
     answer: (senses) => senses.map((sense, index) => normalise(step(states[index]!, normalise(sense)))),
+    close: () => undefined,
   };
 }

@@ -16,6 +16,8 @@ export interface Watcher {
 /** Those who answer senses, as processes or in process. */
 export interface Agents {
   answer(senses: readonly Sense[]): readonly Steer[] | Promise<readonly Steer[]>;
+  /** Lets go of what the agents hold; called once, however the run ended. */
+  close(): void | Promise<void>;
 }
 
 /** Why a run could not go on: the bench failed, not the trial. */

@@ -36,9 +36,10 @@ function mulHigh(a: number, b: number): number {
   const aHigh = a >>> 16;
   const bLow = b & 0xffff;
   const bHigh = b >>> 16;
-  const mid = aHigh * bLow + ((aLow * bLow) >>> 16);
-  const mid2 = aLow * bHigh + (mid % 0x10000);
-  return (aHigh * bHigh + Math.floor(mid / 0x10000) + Math.floor(mid2 / 0x10000)) >>> 0;
+  const lowHigh = Math.imul(aLow, bHigh);
+  const highLow = Math.imul(aHigh, bLow);
+  const middle = (Math.imul(aLow, bLow) >>> 16) + (lowHigh & 0xffff) + (highLow & 0xffff);
+  return (Math.imul(aHigh, bHigh) + (lowHigh >>> 16) + (highLow >>> 16) + (middle >>> 16)) >>> 0;
 }
 
 /** One block of the generator: counter (four words) and key (two words) to four words in `out`. */

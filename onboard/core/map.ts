@@ -155,10 +155,9 @@ export function currentWithSpread(map: CurrentMap, at: { eastM: number; northM: 
   const { plan, active, scratch } = map;
   const { modes } = plan.scratch;
   const { count } = plan.basis;
-  const mean = scratch.gain;
-  meanCurrentAt(map, at, mean);
-  out.eastMps = mean[0]!;
-  out.northMps = mean[1]!;
+  meanCurrentAt(map, at, scratch.gain);
+  out.eastMps = scratch.gain[0]!;
+  out.northMps = scratch.gain[1]!;
   const f = transition(plan.modePerS, at.atS - filterTimeS(active, at.atS));
   const { east, north } = scratch;
   east.fill(0);
@@ -182,26 +181,33 @@ export function currentWithSpread(map: CurrentMap, at: { eastM: number; northM: 
     newNorth += modes.north[mode]! ** 2;
   }
   const fresh = f.newVariance * plan.modeSigmaMps ** 2;
+  const { gain } = scratch;
   const extent = plan.biasAt;
-  out.varEastM2ps2 = spread(active, plan.size, { a: east, b: east, extent }) + fresh * newEast;
-  out.covEastNorthM2ps2 = spread(active, plan.size, { a: east, b: north, extent }) + fresh * newCross;
-  out.varNorthM2ps2 = spread(active, plan.size, { a: north, b: north, extent }) + fresh * newNorth;
+  timesCovariance(active, plan.size, { row: east, extent }, gain);
+  out.varEastM2ps2 = dot(east, gain, extent) + fresh * newEast;
+  out.covEastNorthM2ps2 = dot(north, gain, extent) + fresh * newCross;
+  timesCovariance(active, plan.size, { row: north, extent }, gain);
+  out.varNorthM2ps2 = dot(north, gain, extent) + fresh * newNorth;
 }
 
-/** a' P b over the first `extent` states. */
-export function spread(
-  filter: Filter, size: number, of: { a: Float64Array; b: Float64Array; extent: number },
-): number {
-  const { a, b, extent } = of;
+/** P row over the first `extent` states, written to `out`. */
+export function timesCovariance(
+  filter: Filter, size: number, of: { row: Float64Array; extent: number }, out: Float64Array,
+): void {
+  const { row, extent } = of;
   const { covariance } = filter;
-  let total = 0;
-  for (let row = 0; row < extent; row++) {
-    const weight = a[row]!;
+  for (let at = 0; at < extent; at++) out[at] = 0;
+  for (let from = 0; from < extent; from++) {
+    const weight = row[from]!;
     if (weight === 0) continue;
-    const start = row * size;
-    let sum = 0;
-    for (let column = 0; column < extent; column++) sum += covariance[start + column]! * b[column]!;
-    total += weight * sum;
+    const start = from * size;
+    for (let at = 0; at < extent; at++) out[at]! += weight * covariance[start + at]!;
   }
-  return total;
+}
+
+/** The inner product over the first `extent` states. */
+export function dot(a: Float64Array, b: Float64Array, extent: number): number {
+  let sum = 0;
+  for (let at = 0; at < extent; at++) sum += a[at]! * b[at]!;
+  return sum;
 }

@@ -9,7 +9,7 @@
  */
 import { modesAt } from './basis.ts';
 import { TIDE_AT, transition, type FilterPlan } from './filter.ts';
-import { filterTimeS, spread, type CurrentMap } from './map.ts';
+import { dot, filterTimeS, timesCovariance, type CurrentMap } from './map.ts';
 
 /** Sums since a moment t0. */
 export interface Leg {
@@ -162,7 +162,10 @@ export function positionSpread(
   const { size } = map.plan;
   const own = isInFilter(map, of.anchor, of.selfIndex) ? 0 : of.anchor.sigmaM ** 2;
   const extra = own + of.whiteM2;
-  out.varEastM2 = spread(map.active, size, { a: rows.east, b: rows.east, extent: size }) + extra;
-  out.covEastNorthM2 = spread(map.active, size, { a: rows.east, b: rows.north, extent: size });
-  out.varNorthM2 = spread(map.active, size, { a: rows.north, b: rows.north, extent: size }) + extra;
+  const { gain } = map.scratch;
+  timesCovariance(map.active, size, { row: rows.east, extent: size }, gain);
+  out.varEastM2 = dot(rows.east, gain, size) + extra;
+  out.covEastNorthM2 = dot(rows.north, gain, size);
+  timesCovariance(map.active, size, { row: rows.north, extent: size }, gain);
+  out.varNorthM2 = dot(rows.north, gain, size) + extra;
 }

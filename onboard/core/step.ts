@@ -19,8 +19,8 @@ import { frameTime, isTimeToSay, nextSequence, readHeard } from './talk.ts';
 
 const MINUTE_S = 60;
 /** One point of the loop has its uncertainty renewed every so many ticks, the own place at every so many. */
-const SIGMA_POINT_TICKS = 2;
-const SIGMA_HERE_TICKS = 10;
+const SIGMA_POINT_TICKS = 4;
+const SIGMA_HERE_TICKS = 15;
 
 /** Answers one sense. */
 export function step(state: State, sense: Sense): Steer {
