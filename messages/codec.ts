@@ -5,6 +5,8 @@
 import type { z } from 'zod';
 
 export const MESSAGE_BYTES_MAX = 256 * 1024;
+/** Whoever sent the bytes chose what stands in the reason; it is cut to what a status can carry. */
+const REASON_LENGTH_MAX = 300;
 
 export type Reading<T> = { readonly ok: true; readonly value: T } | { readonly ok: false; readonly reason: string };
 
@@ -14,7 +16,9 @@ const encoder = new TextEncoder();
 /** Reads one message of a schema from its bytes (UTF-8 JSON). */
 export function readMessage<T>(schema: z.ZodType<T>, bytes: Uint8Array): Reading<T> {
   if (bytes.length === 0) return { ok: false, reason: 'is empty' };
-  if (bytes.length > MESSAGE_BYTES_MAX) return { ok: false, reason: `has ${bytes.length} bytes, but must have at most ${MESSAGE_BYTES_MAX}` };
+  if (bytes.length > MESSAGE_BYTES_MAX) {
+    return { ok: false, reason: `has ${bytes.length} bytes, but must have at most ${MESSAGE_BYTES_MAX}` };
+  }
   let value: unknown;
   try {
     value = JSON.parse(decoder.decode(bytes));
@@ -24,7 +28,8 @@ export function readMessage<T>(schema: z.ZodType<T>, bytes: Uint8Array): Reading
   const parsed = schema.safeParse(value);
   if (parsed.success) return { ok: true, value: parsed.data };
   const issue = parsed.error.issues[0];
-  return { ok: false, reason: issue === undefined ? 'does not fit its schema' : `${issue.path.join('.') || 'message'}: ${issue.message}` };
+  if (issue === undefined) return { ok: false, reason: 'does not fit its schema' };
+  return { ok: false, reason: `${issue.path.join('.') || 'message'}: ${issue.message}`.slice(0, REASON_LENGTH_MAX) };
 }
 
 /** A message as bytes. */
