@@ -10,7 +10,7 @@ export const MAP_POINTS = 64;
 /** Why an agent is in its state or in trouble; a closed list, text is made at the edge. */
 export const REASONS = [
   'no-fix-yet', 'start', 'on-the-loop', 'off-the-loop', 'ordered', 'battery-low', 'current-too-strong',
-  'position-uncertain', 'map-stale', 'alone', 'outside-keep-in', 'arrived',
+  'position-uncertain', 'map-stale', 'alone', 'outside-keep-in', 'arrived', 'place-taken',
 ] as const;
 
 /** What became of a frame that was heard: used, or why it was refused. */

@@ -11,6 +11,9 @@
 import { wrapHalf, wrapTurns } from './angle.ts';
 import { isHeard, peerPhase, peerState, type Peers } from './peers.ts';
 
+/** Weight of staying near the present pattern: enough to choose among equals, no more. */
+const NEAR_WEIGHT = 1e-6;
+
 export interface Pattern {
   readonly offsets: Float64Array;
   readonly lengthM: number;
@@ -50,32 +53,70 @@ export function nearestPattern(pattern: Pattern, phase: number): number {
   return best;
 }
 
-export interface PatternTick {
-  readonly atS: number;
-  readonly silenceS: number;
-  /** Time in which the pattern follows what the fleet shows. */
-  readonly followS: number;
-  /** Own phase and place while holding, or null. */
-  readonly own: { readonly phase: number; readonly place: number } | null;
+/** Moves the pattern on to `atS` at the common speed. */
+export function movePattern(pattern: Pattern, atS: number): void {
+  pattern.phase = wrapTurns(pattern.phase + turnsPerS(pattern) * (atS - pattern.atS));
+  pattern.atS = atS;
 }
 
-/** Moves the pattern on to `atS` and draws it toward the vehicles that hold their places. */
-export function movePattern(pattern: Pattern, peers: Peers, tick: PatternTick): void {
-  const stepS = tick.atS - pattern.atS;
-  pattern.phase = wrapTurns(pattern.phase + turnsPerS(pattern) * stepS);
-  pattern.atS = tick.atS;
+export interface FleetNow {
+  readonly atS: number;
+  readonly silenceS: number;
+}
+
+/** Phase by now of a peer that holds its place, or −1 for any other. */
+function holderPhase(pattern: Pattern, peers: Peers, peer: number, now: FleetNow): number {
+  if (peer === peers.selfIndex || !isHeard(peers, peer, now) || peerState(peers, peer) !== 'holding') return -1;
+  return peerPhase(peers, peer, now.atS, turnsPerS(pattern));
+}
+
+/** Draws the pattern by `share` toward the vehicles that hold their places; `ownTurns` is how far ahead of its place this one is. */
+export function followFleet(
+  pattern: Pattern, peers: Peers, now: FleetNow & { readonly share: number; readonly ownTurns: number | null },
+): void {
   let sum = 0;
   let counted = 0;
   for (let peer = 0; peer < peers.count; peer++) {
-    if (peer === peers.selfIndex || !isHeard(peers, peer, tick) || peerState(peers, peer) !== 'holding') continue;
-    const phase = peerPhase(peers, peer, { atS: tick.atS, turnsPerS: turnsPerS(pattern) });
+    const phase = holderPhase(pattern, peers, peer, now);
+    if (phase < 0) continue;
     sum += wrapHalf(phase - placePhase(pattern, nearestPattern(pattern, phase)));
     counted += 1;
   }
-  if (tick.own !== null) {
-    sum += wrapHalf(tick.own.phase - placePhase(pattern, tick.own.place));
+  if (now.ownTurns !== null) {
+    sum += wrapHalf(now.ownTurns);
     counted += 1;
   }
-  if (counted === 0) return;
-  pattern.phase = wrapTurns(pattern.phase + (sum / counted) * Math.min(1, Math.max(0, stepS) / tick.followS));
+  if (counted > 0) pattern.phase = wrapTurns(pattern.phase + (sum / counted) * now.share);
+}
+
+/**
+ * Lays the pattern on the vehicles that hold their places, at once: of all ways to put a place on a
+ * holder the one with the least sum of squared distances, and of equals the one nearest to the present.
+ */
+export function alignPattern(pattern: Pattern, peers: Peers, now: FleetNow): void {
+  const before = pattern.phase;
+  let best = before;
+  let bestCost = Infinity;
+  for (let peer = 0; peer < peers.count; peer++) {
+    const phase = holderPhase(pattern, peers, peer, now);
+    if (phase < 0) continue;
+    for (let place = 0; place < pattern.offsets.length; place++) {
+      pattern.phase = wrapTurns(phase - pattern.offsets[place]!);
+      const cost = squaredMisfit(pattern, peers, now) + NEAR_WEIGHT * wrapHalf(pattern.phase - before) ** 2;
+      if (cost < bestCost) {
+        best = pattern.phase;
+        bestCost = cost;
+      }
+    }
+  }
+  pattern.phase = best;
+}
+
+function squaredMisfit(pattern: Pattern, peers: Peers, now: FleetNow): number {
+  let sum = 0;
+  for (let peer = 0; peer < peers.count; peer++) {
+    const phase = holderPhase(pattern, peers, peer, now);
+    if (phase >= 0) sum += wrapHalf(phase - placePhase(pattern, nearestPattern(pattern, phase))) ** 2;
+  }
+  return sum;
 }

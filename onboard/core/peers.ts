@@ -17,6 +17,8 @@ export interface Peers {
   readonly eastM: Float64Array;
   readonly northM: Float64Array;
   readonly stateIndex: Uint8Array;
+  /** Counts the frames that told something new. */
+  news: number;
 }
 
 export function startPeers(selfIndex: number, count: number): Peers {
@@ -28,6 +30,7 @@ export function startPeers(selfIndex: number, count: number): Peers {
     eastM: new Float64Array(count),
     northM: new Float64Array(count),
     stateIndex: new Uint8Array(count),
+    news: 0,
   };
 }
 
@@ -42,6 +45,7 @@ export function takeFrame(peers: Peers, frame: Frame, heardAtS: number): void {
   peers.eastM[peer] = frame.eastM;
   peers.northM[peer] = frame.northM;
   peers.stateIndex[peer] = frame.stateIndex;
+  peers.news += 1;
 }
 
 /** Whether a peer was heard within the last `silenceS`. */
@@ -53,7 +57,7 @@ export function peerState(peers: Peers, peer: number): AgentState {
   return AGENT_STATES[peers.stateIndex[peer]!]!;
 }
 
-/** The phase of a peer by now, moving on at `turnsPerS` since its frame. */
-export function peerPhase(peers: Peers, peer: number, now: { atS: number; turnsPerS: number }): number {
-  return wrapTurns(peers.phase[peer]! + now.turnsPerS * (now.atS - peers.atS[peer]!));
+/** The phase of a peer at `atS`, moving on at `turnsPerS` since its frame. */
+export function peerPhase(peers: Peers, peer: number, atS: number, turnsPerS: number): number {
+  return wrapTurns(peers.phase[peer]! + turnsPerS * (atS - peers.atS[peer]!));
 }

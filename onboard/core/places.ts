@@ -16,6 +16,8 @@ const MEETING_ROUNDS = 24;
 const SWAP_PASSES_MAX = 16;
 /** Two phases closer than this share of the smallest gap are one place. */
 const SAME_PLACE_SHARE = 0.45;
+/** A holder this near, as a share of the mean gap, is beside this vehicle. */
+const BESIDE_SHARE = 0.25;
 
 export interface Vehicle {
   readonly eastM: number;
@@ -41,6 +43,8 @@ export interface PlaceQuestion {
   readonly pattern: Pattern;
   readonly peers: Peers;
   readonly self: Vehicle;
+  /** Own place on the loop. */
+  readonly ownPhase: number;
   readonly atS: number;
   readonly silenceS: number;
 }
@@ -90,21 +94,27 @@ function claimOf(question: PlaceQuestion, peer: number): number {
   if (peer === peers.selfIndex || !isHeard(peers, peer, question)) return -1;
   const state = peerState(peers, peer);
   if (state !== 'joining' && state !== 'holding') return -1;
-  const phase = peerPhase(peers, peer, { atS: question.atS, turnsPerS: turnsPerS(pattern) });
+  const phase = peerPhase(peers, peer, question.atS, turnsPerS(pattern));
   const place = nearestPattern(pattern, phase);
   const off = Math.abs(wrapHalf(phase - placePhase(pattern, place)));
   return off <= SAME_PLACE_SHARE / pattern.offsets.length ? place : -1;
 }
 
-/** Whether a peer with the better right is on `place`. */
+/**
+ * Whether a peer with the better right is on `place`. For a vehicle that holds, only a holder that is
+ * really beside it: gaps that breathe in strong drift must not look like two on one place.
+ */
 export function isTaken(question: PlaceQuestion, place: number, holding: boolean): boolean {
-  const { peers } = question;
+  const { peers, pattern } = question;
   for (let peer = 0; peer < peers.count; peer++) {
     if (claimOf(question, peer) !== place) continue;
     const peerHolds = peerState(peers, peer) === 'holding';
-    if (peerHolds !== holding) {
-      if (peerHolds) return true;
-    } else if (peer < peers.selfIndex) return true;
+    if (!holding) {
+      if (peerHolds || peer < peers.selfIndex) return true;
+    } else if (peerHolds && peer < peers.selfIndex) {
+      const offTurns = Math.abs(wrapHalf(peerPhase(peers, peer, question.atS, turnsPerS(pattern)) - question.ownPhase));
+      if (offTurns < BESIDE_SHARE / pattern.offsets.length) return true;
+    }
   }
   return false;
 }

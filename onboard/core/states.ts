@@ -8,7 +8,7 @@ import type { Reason } from '../../messages/steer.ts';
 /** What can happen to an agent, most urgent first. */
 export type Event =
   | 'order-surface' | 'order-home' | 'order-hold' | 'battery-low'
-  | 'ready' | 'in-place' | 'off-the-loop' | 'arrived';
+  | 'ready' | 'in-place' | 'off-the-loop' | 'place-taken' | 'arrived';
 
 interface Move {
   readonly to: AgentState;
@@ -33,6 +33,7 @@ const TABLE: Record<AgentState, Partial<Record<Event, Move>>> = {
     'order-home': { to: 'homing', reason: 'ordered' },
     'battery-low': { to: 'homing', reason: 'battery-low' },
     'off-the-loop': { to: 'joining', reason: 'off-the-loop' },
+    'place-taken': { to: 'joining', reason: 'place-taken' },
   },
   homing: {
     'order-surface': { to: 'surfacing', reason: 'ordered' },

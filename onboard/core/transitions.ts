@@ -1,0 +1,124 @@
+/**
+ * What moves an agent from state to state: orders, charge, having heard the fleet, being in place,
+ * being off the line, a peer with the better right to its place. The table itself is in states.ts.
+ */
+import { wrapHalf } from './angle.ts';
+import { mustTurnHome } from './energy.ts';
+import { distanceHomeM, type Guidance, type GuidanceInput } from './guidance-memory.ts';
+import { placePhase } from './pattern.ts';
+import { isHeard } from './peers.ts';
+import { choosePlace, freePlace, isTaken, type PlaceQuestion } from './places.ts';
+import { moveOn, type Event } from './states.ts';
+
+/** Home, and at the layer of joining, is within so much. */
+export const HOME_REACHED_M = 30;
+const DEPTH_REACHED_M = 1;
+/** A vehicle that begins this near the line's depth, and on the line, was at work there. */
+const AT_WORK_M = 3;
+
+/** Whether the vehicle is on the line at the fleet's depth. */
+export function isAtWork(guidance: Guidance, input: GuidanceInput): boolean {
+  const { mission, at } = guidance;
+  return Math.abs(at.crossTrackM) < mission.onboard.takeHold_m && Math.abs(input.depthM - mission.depth_m) < AT_WORK_M;
+}
+
+/** Applies whatever has happened by this tick. */
+export function changeState(guidance: Guidance, input: GuidanceInput): void {
+  const { memory, mission } = guidance;
+  memory.batteryLow = mustTurnHome(mission.self, input.battery, {
+    distanceM: distanceHomeM(guidance, input),
+    driftMps: memory.driftMostMps,
+    reserve: mission.onboard.batteryReserve,
+  });
+  for (const order of input.orders) {
+    apply(guidance, order === 'surface' ? 'order-surface' : order === 'home' ? 'order-home' : 'order-hold');
+  }
+  if (memory.batteryLow) apply(guidance, 'battery-low');
+  switch (memory.state) {
+    case 'waiting':
+      if (isReady(guidance, input)) makeReady(guidance, input);
+      return;
+    case 'joining':
+      keepPlace(guidance, input);
+      if (isInPlace(guidance)) apply(guidance, 'in-place');
+      return;
+    case 'holding':
+      if (Math.abs(guidance.at.crossTrackM) > mission.onboard.letGo_m) apply(guidance, 'off-the-loop');
+      else keepPlace(guidance, input);
+      return;
+    case 'homing':
+      if (distanceHomeM(guidance, input) < HOME_REACHED_M) apply(guidance, 'arrived');
+      return;
+    case 'surfacing':
+      return;
+  }
+}
+
+function apply(guidance: Guidance, event: Event): void {
+  const { memory } = guidance;
+  const move = moveOn(memory.state, event);
+  if (move === null) return;
+  memory.state = move.to;
+  memory.reason = move.reason;
+  memory.meetingS = 0;
+}
+
+/** Ready to join: at the own layer, and every peer was heard or two rounds of slots have gone by. */
+function isReady(guidance: Guidance, input: GuidanceInput): boolean {
+  const { mission, memory } = guidance;
+  const waitedS = input.atS - memory.startedAtS;
+  const roundS = mission.fleet.length * mission.modem.slot_s;
+  const diveS = (2 * mission.depth_m) / mission.self.climb_mps;
+  const isDeep = memory.beganOnLoop || Math.abs(input.depthM - guidance.joiningDepthM) < DEPTH_REACHED_M || waitedS > diveS;
+  return isDeep && (waitedS >= 2 * roundS + input.tickS || areAllHeard(guidance, input, 2 * roundS));
+}
+
+function areAllHeard(guidance: Guidance, input: GuidanceInput, silenceS: number): boolean {
+  const { peers } = guidance;
+  const now = { atS: input.atS, silenceS };
+  for (let peer = 0; peer < peers.count; peer++) {
+    if (peer !== guidance.selfIndex && !isHeard(peers, peer, now)) return false;
+  }
+  return true;
+}
+
+function makeReady(guidance: Guidance, input: GuidanceInput): void {
+  const question = questionOf(guidance, input);
+  const place = choosePlace(question);
+  guidance.memory.place = isTaken(question, place, false) ? freePlace(question, place) : place;
+  apply(guidance, 'ready');
+}
+
+function questionOf(guidance: Guidance, input: GuidanceInput): PlaceQuestion {
+  return {
+    loop: guidance.loop,
+    pattern: guidance.pattern,
+    peers: guidance.peers,
+    self: { eastM: input.eastM, northM: input.northM, speedMps: guidance.range.maxMps },
+    ownPhase: guidance.at.phase,
+    atS: input.atS,
+    silenceS: guidance.mission.onboard.peerSilence_s,
+  };
+}
+
+/** Gives way on a place that a peer with the better right claims; only news can change that. */
+function keepPlace(guidance: Guidance, input: GuidanceInput): void {
+  const { memory, peers } = guidance;
+  if (memory.newsSeen === peers.news) return;
+  memory.newsSeen = peers.news;
+  const question = questionOf(guidance, input);
+  const isHolding = memory.state === 'holding';
+  if (!isTaken(question, memory.place, isHolding)) return;
+  const place = freePlace(question, memory.place);
+  if (place === memory.place) return;
+  memory.place = place;
+  if (isHolding) apply(guidance, 'place-taken');
+}
+
+function isInPlace(guidance: Guidance): boolean {
+  const { at, pattern, memory, loop, mission } = guidance;
+  const offM = Math.abs(wrapHalf(at.phase - placePhase(pattern, memory.place))) * loop.lengthM;
+  const gapM = loop.lengthM / mission.offsets.length;
+  return Math.abs(at.crossTrackM) < mission.onboard.takeHold_m
+    && offM < Math.min(2 * mission.onboard.takeHold_m, gapM / 4);
+}
