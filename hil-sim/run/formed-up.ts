@@ -32,7 +32,9 @@ export type FormedUpStep = 'out' | 'begins' | 'goes-on';
 
 /** Judges one tick; distances and gap errors are by fleet index. */
 export function judgeFormedUp(
-  formed: FormedUp, counted: Int32Array, at: { timeS: number; distanceM: Float64Array; gapError: Float64Array },
+  formed: FormedUp,
+  counted: Int32Array,
+  at: { timeS: number; distanceM: Float64Array; gapError: Float64Array },
 ): FormedUpStep {
   if (formed.marks[0] === 1) return 'goes-on';
   const out = whoIsOut(formed, counted, at);
@@ -48,9 +50,11 @@ export function judgeFormedUp(
   return begins ? 'begins' : 'goes-on';
 }
 
-/** The vehicle farthest off the loop if one is out there, else the one whose gap is worst; −1 if all are in. */
+/** The vehicle farthest off the loop if one is out, else the one whose gap is worst; −1 if all are in. */
 function whoIsOut(
-  formed: FormedUp, counted: Int32Array, at: { distanceM: Float64Array; gapError: Float64Array },
+  formed: FormedUp,
+  counted: Int32Array,
+  at: { distanceM: Float64Array; gapError: Float64Array },
 ): number {
   let off = -1;
   let apart = -1;

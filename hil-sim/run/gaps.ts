@@ -25,7 +25,9 @@ export interface Gaps {
 
 /** Gaps among the vehicles at `counted`, of a fleet of `fleetSize`. */
 export function startGaps(
-  spacing: Trial['mission']['spacing'], counted: readonly number[], of: { fleetSize: number; lengthM: number },
+  spacing: Trial['mission']['spacing'],
+  counted: readonly number[],
+  of: { fleetSize: number; lengthM: number },
 ): Gaps {
   return {
     lengthM: of.lengthM,

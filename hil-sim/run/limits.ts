@@ -15,9 +15,18 @@ type LimitName = Exclude<keyof TrialLimits, 'except'>;
 
 /** What each limit acts on; the order is that of the table. */
 const ACTS_ON = {
-  formUpWithin: 'formUp_s', crossTrackRms: 'crossTrackRms', crossTrackMax: 'crossTrackMax', gapRms: 'gapRms',
-  separationMin: 'separationMin', currentRms: 'currentRms', mapRms: 'mapRms', mapSpread: 'mapSpread',
-  positionRms: 'positionRms', deliveryRatioMin: 'deliveryRatio', energy: 'energy_Wh', lateTicks: 'lateTicks',
+  formUpWithin: 'formUp_s',
+  crossTrackRms: 'crossTrackRms',
+  crossTrackMax: 'crossTrackMax',
+  gapRms: 'gapRms',
+  separationMin: 'separationMin',
+  currentRms: 'currentRms',
+  mapRms: 'mapRms',
+  mapSpread: 'mapSpread',
+  positionRms: 'positionRms',
+  deliveryRatioMin: 'deliveryRatio',
+  energy: 'energy_Wh',
+  lateTicks: 'lateTicks',
 } as const satisfies Record<LimitName, MeasureName>;
 
 const LIMIT_NAMES = Object.keys(ACTS_ON) as LimitName[];
@@ -47,7 +56,9 @@ function judge(name: LimitName, limit: number, report: MeasureReport): LimitResu
   const margin = value === null ? null : isLeast(name) ? value - limit : limit - value;
   const neverNear = name === 'separationMin' && value === null;
   return {
-    name, value, limit,
+    name,
+    value,
+    limit,
     unit: MEASURES[measure].unit,
     met: neverNear || (margin !== null && margin >= 0),
     margin,
@@ -60,7 +71,7 @@ export function isLeast(name: string): boolean {
   return name.endsWith('Min');
 }
 
-/** The margin as a share of the limit, for comparing limits of different units; −1 where there is no value. */
+/** The margin as a share of the limit, to compare limits of different units; −1 where there is no value. */
 export function marginShare(result: LimitResult): number {
   if (result.margin === null) return result.met ? 1 : -1;
   if (result.limit === 0) return result.margin < 0 ? -1 : 0;

@@ -1,8 +1,8 @@
 /**
  * `log.ndjson.gz`: one JSON value a line, in gzip members that each hold whole lines.
  *
- * First line `{"log":1,"title":…,"seed":…,"tick_s":…,"missions":[…]}`: all that an agent is told before
- * it starts, in fleet order. Then a line a tick, `{"tick":n,"senses":[…],"steers":[…]}`, both in fleet
+ * First line `{"log":1,"title":…,"seed":…,"tick_s":…,"missions":[…]}`: all that agents are told before
+ * they start, in fleet order. Then a line a tick, `{"tick":n,"senses":[…],"steers":[…]}`, both in fleet
  * order. Last, if the run came to its end, `{"end":true,"ticks":n,"digest":"…"}`. Other lines may come
  * between ticks; a reader passes over what it does not know.
  *
@@ -108,7 +108,9 @@ export class LogWriter {
     this.flush();
     this.#writeReady();
     while (this.#members.length > 0 && this.#failure === null) {
-      await new Promise<void>((resolve) => { this.#whenEmpty = resolve; });
+      await new Promise<void>((resolve) => {
+        this.#whenEmpty = resolve;
+      });
     }
     if (this.#failure !== null) throw this.#failure;
   }

@@ -38,7 +38,9 @@ export function startMaps(track: Track, durationS: number): Maps {
   }
   const minutes = Math.floor(durationS / MINUTE_S) + 1;
   return {
-    places, minutes, scratch,
+    places,
+    minutes,
+    scratch,
     pictures: new Float32Array(minutes * POINTS * FIELDS).fill(NaN),
     errorMps: new Float64Array(minutes).fill(NaN),
     spreadMps: new Float64Array(minutes).fill(NaN),
@@ -49,7 +51,8 @@ export function startMaps(track: Track, durationS: number): Maps {
 
 /** Takes the maps of one tick (null where a vehicle gave none, or does not count). */
 export function takeMaps(
-  maps: Maps, given: readonly (MapMessage | null)[],
+  maps: Maps,
+  given: readonly (MapMessage | null)[],
   at: { timeS: number; water: Water; error: Tally | null; spread: Tally | null },
 ): void {
   const count = meanOf(maps, given);
@@ -74,7 +77,10 @@ export function takeMaps(
       spreadSum += spread2;
     }
   }
-  keepPicture(maps, at.timeS, { errorMps: Math.sqrt(errorSum / count / POINTS), spreadMps: Math.sqrt(spreadSum / count / POINTS) });
+  keepPicture(maps, at.timeS, {
+    errorMps: Math.sqrt(errorSum / count / POINTS),
+    spreadMps: Math.sqrt(spreadSum / count / POINTS),
+  });
 }
 
 function square(east: number, north: number): number {

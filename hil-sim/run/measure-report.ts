@@ -5,7 +5,14 @@ import type { Maps } from './maps.ts';
 import type { MeasureValues, VehicleMeasures, WorstPlaces } from './measures.ts';
 import { finishSeries, type Series } from './series.ts';
 import {
-  NOWHERE, greatestOf, greatestOfVehicle, rmsOf, rmsOfVehicle, worstBy, type Tally, type Worst,
+  NOWHERE,
+  greatestOf,
+  greatestOfVehicle,
+  rmsOf,
+  rmsOfVehicle,
+  worstBy,
+  type Tally,
+  type Worst,
 } from './tally.ts';
 import type { Track } from './track.ts';
 
@@ -84,7 +91,8 @@ function worstPlaces(m: Measures, formUp: number | null): WorstPlaces {
     crossTrackRms: ofRms(tallies.crossTrack),
     crossTrackMax: since(worstBy(tallies.crossTrack, names, greatestOfVehicle)),
     gapRms: ofRms(tallies.gap),
-    separationMin: one! < 0 ? NOWHERE : { vehicle: names[one!]!, at_s: m.separation[1]!, with: names[other!]! },
+    separationMin:
+      one! < 0 ? NOWHERE : { vehicle: names[one!]!, at_s: m.separation[1]!, with: names[other!]! },
     currentRms: ofRms(tallies.current),
     mapRms: ofRms(tallies.mapError),
     mapSpread: ofRms(tallies.mapSpread),
@@ -92,7 +100,8 @@ function worstPlaces(m: Measures, formUp: number | null): WorstPlaces {
     deliveryRatio: leastDelivered(m),
     framesSent: NOWHERE,
     energy_Wh: { vehicle: names[indexOfGreatest(m.energyJ)]!, at_s: null },
-    lateTicks: sum(m.lateTicks) === 0 ? NOWHERE : { vehicle: names[indexOfGreatest(m.lateTicks)]!, at_s: null },
+    lateTicks:
+      sum(m.lateTicks) === 0 ? NOWHERE : { vehicle: names[indexOfGreatest(m.lateTicks)]!, at_s: null },
   };
 }
 
@@ -114,7 +123,8 @@ function leastDelivered(m: Measures): Worst {
 
 function indexOfGreatest(values: Float64Array): number {
   let greatest = 0;
-  for (let index = 1; index < values.length; index++) if (values[index]! > values[greatest]!) greatest = index;
+  for (let index = 1; index < values.length; index++)
+    if (values[index]! > values[greatest]!) greatest = index;
   return greatest;
 }
 

@@ -74,7 +74,10 @@ export function startMeasures(trial: Trial, water: Water): Measures {
   const column = (): Float64Array => new Float64Array(fleetSize);
   const tally = (): Tally => startTally(fleetSize);
   return {
-    trial, water, names, track,
+    trial,
+    water,
+    names,
+    track,
     counted: Int32Array.from(counted),
     isCounted: Uint8Array.from(names, (name) => (except.includes(name) ? 0 : 1)),
     nearest: names.map(() => startNearest()),
@@ -83,7 +86,12 @@ export function startMeasures(trial: Trial, water: Water): Measures {
     gaps: startGaps(trial.mission.spacing, counted, { fleetSize, lengthM: track.lengthM }),
     formed: startFormedUp(trial.mission.formedUp),
     tallies: {
-      crossTrack: tally(), gap: tally(), current: tally(), position: tally(), mapError: tally(), mapSpread: tally(),
+      crossTrack: tally(),
+      gap: tally(),
+      current: tally(),
+      position: tally(),
+      mapError: tally(),
+      mapSpread: tally(),
     },
     maps: startMaps(track, trial.duration),
     givenMaps: names.map(() => null),
@@ -94,7 +102,9 @@ export function startMeasures(trial: Trial, water: Water): Measures {
     breachS: new Float64Array(2).fill(NaN),
     crossTrackLimitM: trial.limits.crossTrackMax ?? Infinity,
     separationLimitM: trial.limits.separationMin ?? 0,
-    energyJ: column(), battery: column(), lateTicks: column(),
+    energyJ: column(),
+    battery: column(),
+    lateTicks: column(),
     progress: Float64Array.of(0, 0),
   };
 }
@@ -141,7 +151,8 @@ function tallyVehicles(m: Measures, record: TickRecord, counts: boolean): void {
     const { estimate, tick } = steers[index]!;
     const at = index * series.bins + bin;
     const current2 = normSquare(
-      estimate.currentEast_mps - truth.currentEastMps[index]!, estimate.currentNorth_mps - truth.currentNorthMps[index]!,
+      estimate.currentEast_mps - truth.currentEastMps[index]!,
+      estimate.currentNorth_mps - truth.currentNorthMps[index]!,
     );
     const position2 = normSquare(estimate.east_m - eastM, estimate.north_m - northM);
     const distanceM = m.distanceM[index]!;
@@ -180,8 +191,10 @@ function tallyMaps(m: Measures, record: TickRecord, counts: boolean): void {
   }
   if (given === 0) return;
   takeMaps(m.maps, m.givenMaps, {
-    timeS: record.timeS, water: m.water,
-    error: counts ? m.tallies.mapError : null, spread: counts ? m.tallies.mapSpread : null,
+    timeS: record.timeS,
+    water: m.water,
+    error: counts ? m.tallies.mapError : null,
+    spread: counts ? m.tallies.mapSpread : null,
   });
 }
 
@@ -203,7 +216,8 @@ function tallySeparation(m: Measures, record: TickRecord): void {
       m.separationPair[1] = other;
     }
   }
-  if (Number.isNaN(m.breachS[1]!) && least < m.separationLimitM * m.separationLimitM) m.breachS[1] = record.timeS;
+  if (Number.isNaN(m.breachS[1]!) && least < m.separationLimitM * m.separationLimitM)
+    m.breachS[1] = record.timeS;
 }
 
 function tallyHearings(m: Measures, record: TickRecord): void {

@@ -9,7 +9,10 @@ export const MEASURES = {
   separationMin: { unit: 'm', says: 'distance between two vehicles within 5 m of depth, least, whole run' },
   currentRms: { unit: 'm/s', says: 'stated current at the own place against the truth, root mean square' },
   mapRms: { unit: 'm/s', says: 'stated currents round the loop against the truth, root mean square' },
-  mapSpread: { unit: 'm/s', says: 'stated currents round the loop against the fleet\'s mean, root mean square' },
+  mapSpread: {
+    unit: 'm/s',
+    says: "stated currents round the loop against the fleet's mean, root mean square",
+  },
   positionRms: { unit: 'm', says: 'stated position against the true one, root mean square' },
   deliveryRatio: { unit: '', says: 'frames heard and used over frames and hearers, whole run' },
   framesSent: { unit: 'frames', says: 'frames said whose fate is known, whole run' },

@@ -19,8 +19,10 @@ const limitResultSchema = z.strictObject({
 });
 
 const measuresSchema = z.strictObject(
-  Object.fromEntries(MEASURE_NAMES.map((name) => [name, z.number().nullable()])) as
-    Record<MeasureName, z.ZodNullable<z.ZodNumber>>,
+  Object.fromEntries(MEASURE_NAMES.map((name) => [name, z.number().nullable()])) as Record<
+    MeasureName,
+    z.ZodNullable<z.ZodNumber>
+  >,
 );
 
 export const outcomeSchema = z.strictObject({
@@ -31,7 +33,12 @@ export const outcomeSchema = z.strictObject({
   except: z.array(z.string()).optional().describe('vehicles taken out of the loop measures, if any'),
   measures: measuresSchema,
   why: z
-    .strictObject({ firstBreach: z.string(), at_s: seconds, faultsThen: z.array(z.string()), repeat: z.string() })
+    .strictObject({
+      firstBreach: z.string(),
+      at_s: seconds,
+      faultsThen: z.array(z.string()),
+      repeat: z.string(),
+    })
     .optional(),
   yardsticks: z.strictObject({ central: measuresSchema, known: measuresSchema }).optional(),
   digest: z.string().regex(/^[0-9a-f]{64}$/),
@@ -122,20 +129,26 @@ export function verdictSentence(outcome: Outcome): string {
     const roomy = limits.filter((limit) => limit.limit !== 0 && limit.value !== null);
     if (roomy.length === 0) return `Pass: ${all} met.`;
     const tight = roomy.reduce((least, limit) => (marginShare(limit) < marginShare(least) ? limit : least));
-    return `Pass: ${all} met. Least room: ${tight.name} ${figure(tight.value, tight.unit)}, `
-      + `${bound(tight)} ${figure(tight.limit, tight.unit)}.`;
+    return (
+      `Pass: ${all} met. Least room: ${tight.name} ${figure(tight.value, tight.unit)}, ` +
+      `${bound(tight)} ${figure(tight.limit, tight.unit)}.`
+    );
   }
   if (outcome.measures.formUp_s === null && limits.some((limit) => !limit.met && limit.value === null)) {
     const last = limits.find((limit) => !limit.met && limit.value === null)!.worst;
     const who = worstWords(last);
-    return `Fail: the fleet never formed up${who === '' ? '' : ` (last out: ${who})`}, `
-      + `so ${broken.length} of ${count(limits.length)} ${broken.length === 1 ? 'is' : 'are'} not met.`;
+    return (
+      `Fail: the fleet never formed up${who === '' ? '' : ` (last out: ${who})`}, ` +
+      `so ${broken.length} of ${count(limits.length)} ${broken.length === 1 ? 'is' : 'are'} not met.`
+    );
   }
   const first = broken.find((limit) => limit.name === outcome.why?.firstBreach) ?? broken[0]!;
   const where = worstWords(first.worst);
-  return `Fail: ${broken.length} of ${count(limits.length)} ${broken.length === 1 ? 'is' : 'are'} not met. `
-    + `${broken.length === 1 ? 'It is' : 'First'}: ${first.name} ${figure(first.value, first.unit)}, `
-    + `${bound(first)} ${figure(first.limit, first.unit)}${where === '' ? '' : `; worst ${where}`}.`;
+  return (
+    `Fail: ${broken.length} of ${count(limits.length)} ${broken.length === 1 ? 'is' : 'are'} not met. ` +
+    `${broken.length === 1 ? 'It is' : 'First'}: ${first.name} ${figure(first.value, first.unit)}, ` +
+    `${bound(first)} ${figure(first.limit, first.unit)}${where === '' ? '' : `; worst ${where}`}.`
+  );
 }
 
 /** "at most" or "at least". */
@@ -154,19 +167,28 @@ export function outcomeLines(outcome: Outcome): string[] {
 
 /** What `limits.except` took out. */
 export function exceptSentence(except: readonly string[]): string {
-  return `Not counted in the loop measures, by the trial's limits: ${except.join(', ')}. Separation counts every vehicle.`;
+  const names = except.join(', ');
+  return `Not counted in the loop measures, by the trial's limits: ${names}. Separation counts every vehicle.`;
 }
 
 function limitTable(limits: Outcome['limits']): string[] {
   const rows = limits.map((limit) => [
-    limit.met ? 'met' : 'NOT MET', limit.name, figure(limit.value, limit.unit),
-    `${bound(limit)} ${figure(limit.limit, limit.unit)}`, marginFigure(limit.margin, limit.unit), worstWords(limit.worst),
+    limit.met ? 'met' : 'NOT MET',
+    limit.name,
+    figure(limit.value, limit.unit),
+    `${bound(limit)} ${figure(limit.limit, limit.unit)}`,
+    marginFigure(limit.margin, limit.unit),
+    worstWords(limit.worst),
   ]);
   const table = [['', 'limit', 'value', 'allowed', 'margin', 'worst'], ...rows];
   const widths = table[0]!.map((_head, column) => Math.max(...table.map((row) => row[column]!.length)));
   const isFigure = (column: number): boolean => column === 2 || column === 4;
-  return table.map((row) => row
-    .map((cell, column) => (isFigure(column) ? cell.padStart(widths[column]!) : cell.padEnd(widths[column]!)))
-    .join('  ')
-    .trimEnd());
+  return table.map((row) =>
+    row
+      .map((cell, column) =>
+        isFigure(column) ? cell.padStart(widths[column]!) : cell.padEnd(widths[column]!),
+      )
+      .join('  ')
+      .trimEnd(),
+  );
 }

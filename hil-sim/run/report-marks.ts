@@ -7,19 +7,61 @@ const SHAPES = 8;
 
 /** Polygons about zero within ±1, y down. */
 const POLYGONS: readonly (readonly (readonly [number, number])[])[] = [
-  Array.from({ length: 20 }, (_, corner) => [
-    0.95 * Math.cos((2 * Math.PI * corner) / 20), 0.95 * Math.sin((2 * Math.PI * corner) / 20),
-  ] as const),
-  [[-0.85, -0.85], [0.85, -0.85], [0.85, 0.85], [-0.85, 0.85]],
-  [[0, -1.1], [1.05, 0.8], [-1.05, 0.8]],
-  [[0, -1.25], [1.05, 0], [0, 1.25], [-1.05, 0]],
+  Array.from(
+    { length: 20 },
+    (_, corner) =>
+      [0.95 * Math.cos((2 * Math.PI * corner) / 20), 0.95 * Math.sin((2 * Math.PI * corner) / 20)] as const,
+  ),
   [
-    [-0.4, -1.1], [0.4, -1.1], [0.4, -0.4], [1.1, -0.4], [1.1, 0.4], [0.4, 0.4],
-    [0.4, 1.1], [-0.4, 1.1], [-0.4, 0.4], [-1.1, 0.4], [-1.1, -0.4], [-0.4, -0.4],
+    [-0.85, -0.85],
+    [0.85, -0.85],
+    [0.85, 0.85],
+    [-0.85, 0.85],
   ],
-  [[-1.05, -0.8], [1.05, -0.8], [0, 1.1]],
-  [[-1.15, -0.45], [1.15, -0.45], [1.15, 0.45], [-1.15, 0.45]],
-  [[-0.95, -1], [0.95, -1], [0.25, 0], [0.95, 1], [-0.95, 1], [-0.25, 0]],
+  [
+    [0, -1.1],
+    [1.05, 0.8],
+    [-1.05, 0.8],
+  ],
+  [
+    [0, -1.25],
+    [1.05, 0],
+    [0, 1.25],
+    [-1.05, 0],
+  ],
+  [
+    [-0.4, -1.1],
+    [0.4, -1.1],
+    [0.4, -0.4],
+    [1.1, -0.4],
+    [1.1, 0.4],
+    [0.4, 0.4],
+    [0.4, 1.1],
+    [-0.4, 1.1],
+    [-0.4, 0.4],
+    [-1.1, 0.4],
+    [-1.1, -0.4],
+    [-0.4, -0.4],
+  ],
+  [
+    [-1.05, -0.8],
+    [1.05, -0.8],
+    [0, 1.1],
+  ],
+  [
+    [-1.15, -0.45],
+    [1.15, -0.45],
+    [1.15, 0.45],
+    [-1.15, 0.45],
+  ],
+  [
+    [-0.95, -1],
+    [0.95, -1],
+    [0.25, 0],
+    [0.95, 1],
+    [-0.95, 1],
+    [-0.25, 0],
+  ],
 ];
 
 export interface Mark {
@@ -54,7 +96,8 @@ export function markOf(index: number): Mark {
         context.closePath();
       },
     },
-    path: (radius) => `M${polygon.map(([x, y]) => `${(x * radius).toFixed(1)},${(y * radius).toFixed(1)}`).join('L')}Z`,
+    path: (radius) =>
+      `M${polygon.map(([x, y]) => `${(x * radius).toFixed(1)},${(y * radius).toFixed(1)}`).join('L')}Z`,
   };
 }
 
@@ -62,6 +105,8 @@ export function markOf(index: number): Mark {
 export function markPicture(index: number): string {
   const mark = markOf(index);
   const fill = mark.isHollow ? 'var(--paper)' : mark.colour;
-  return '<svg class="mark" viewBox="-8 -8 16 16" aria-hidden="true">'
-    + `<path d="${mark.path(5)}" fill="${fill}" stroke="${mark.colour}" stroke-width="1.6"/></svg>`;
+  return (
+    '<svg class="mark" viewBox="-8 -8 16 16" aria-hidden="true">' +
+    `<path d="${mark.path(5)}" fill="${fill}" stroke="${mark.colour}" stroke-width="1.6"/></svg>`
+  );
 }

@@ -36,28 +36,38 @@ function withOwnClips(text: string): string {
 
 function page(input: ReportInput): string {
   const { outcome } = input;
-  return '<!doctype html>\n<html lang="en"><head><meta charset="utf-8">'
-    + '<meta name="viewport" content="width=device-width, initial-scale=1">'
-    + `<title>${html(`${outcome.title}: ${outcome.verdict}`)}</title><style>${REPORT_STYLE}</style></head>\n<body>`
-    + `<header>${opening(input)}</header>\n`
-    + `<section>${limitsSection(outcome)}</section>\n`
-    + `<section class="long">${waterSection(input)}</section>\n`
-    + `<section class="long">${timeSection(input)}</section>\n`
-    + `<section class="long">${vehiclesSection(input)}</section>\n`
-    + `<section>${measuresSection(input)}</section>\n`
-    + `<section>${runSection(input)}</section>\n`
-    + '<footer>A dry run is advice, not clearance to launch. This is no collision-avoidance or safety system.</footer>'
-    + '</body></html>\n';
+  return (
+    '<!doctype html>\n<html lang="en"><head><meta charset="utf-8">' +
+    '<meta name="viewport" content="width=device-width, initial-scale=1">' +
+    `<title>${html(`${outcome.title}: ${outcome.verdict}`)}</title>` +
+    `<style>${REPORT_STYLE}</style></head>\n<body>` +
+    `<header>${opening(input)}</header>\n` +
+    `<section>${limitsSection(outcome)}</section>\n` +
+    `<section class="long">${waterSection(input)}</section>\n` +
+    `<section class="long">${timeSection(input)}</section>\n` +
+    `<section class="long">${vehiclesSection(input)}</section>\n` +
+    `<section>${measuresSection(input)}</section>\n` +
+    `<section>${runSection(input)}</section>\n` +
+    '<footer>A dry run is advice, not clearance to launch. ' +
+    'This is no collision-avoidance or safety system.</footer>' +
+    '</body></html>\n'
+  );
 }
 
 function opening({ outcome, trial, report }: ReportInput): string {
   const fleet = report.vehicles.length;
   const formUp = report.values.formUp_s;
-  const formed = formUp === null ? 'The fleet did not form up' : `The fleet formed up ${formUp === 0 ? 'at once' : `after ${span(formUp)}`}`;
-  return `<h1>${html(verdictSentence(outcome)).replace(/(\d) (?=(?:m|m\/s|%|s|min|h|Wh)\b)/g, '$1&nbsp;')}</h1>`
-    + `<p>${html(trial.title)}, seed ${trial.seed}: ${fleet} vehicle${fleet === 1 ? '' : 's'}, ${span(trial.duration)}, `
-    + `sharing <code>${trial.mission.sharing}</code>. ${formed}.</p>`
-    + (outcome.except === undefined ? '' : `<p><b>${html(exceptSentence(outcome.except))}</b></p>`);
+  const formed =
+    formUp === null
+      ? 'The fleet did not form up'
+      : `The fleet formed up ${formUp === 0 ? 'at once' : `after ${span(formUp)}`}`;
+  return (
+    `<h1>${html(verdictSentence(outcome)).replace(/(\d) (?=(?:m|m\/s|%|s|min|h|Wh)\b)/g, '$1&nbsp;')}</h1>` +
+    `<p>${html(trial.title)}, seed ${trial.seed}: ${fleet} vehicle${fleet === 1 ? '' : 's'}, ` +
+    `${span(trial.duration)}, ` +
+    `sharing <code>${trial.mission.sharing}</code>. ${formed}.</p>` +
+    (outcome.except === undefined ? '' : `<p><b>${html(exceptSentence(outcome.except))}</b></p>`)
+  );
 }
 
 const COLUMNS: readonly { readonly head: string; readonly of: (vehicle: VehicleMeasures) => string }[] = [
@@ -75,20 +85,33 @@ const COLUMNS: readonly { readonly head: string; readonly of: (vehicle: VehicleM
 
 function vehiclesSection({ report }: ReportInput): string {
   const heads = COLUMNS.map(({ head }) => `<th scope="col">${head}</th>`).join('');
-  const rows = report.vehicles.map((vehicle, index) => `<tr><td>${markPicture(index)}${html(vehicle.vehicle)}`
-    + `${vehicle.isExcepted ? ' (not counted)' : ''}</td>${COLUMNS.map(({ of }) => `<td>${whole(of(vehicle))}</td>`).join('')}</tr>`);
-  return `<h2>Vehicles</h2><div class="scroll"><table><thead><tr><th scope="col">vehicle</th>${heads}</tr></thead>`
-    + `<tbody>${rows.join('')}</tbody></table></div>`;
+  const rows = report.vehicles.map(
+    (vehicle, index) =>
+      `<tr><td>${markPicture(index)}${html(vehicle.vehicle)}` +
+      `${vehicle.isExcepted ? ' (not counted)' : ''}</td>` +
+      `${COLUMNS.map(({ of }) => `<td>${whole(of(vehicle))}</td>`).join('')}</tr>`,
+  );
+  return (
+    `<h2>Vehicles</h2><div class="scroll"><table>` +
+    `<thead><tr><th scope="col">vehicle</th>${heads}</tr></thead>` +
+    `<tbody>${rows.join('')}</tbody></table></div>`
+  );
 }
 
 function measuresSection({ report }: ReportInput): string {
   const rows = MEASURE_NAMES.map((name) => {
     const value = report.values[name];
-    return `<tr><td><b>${name}</b> <span class="says">${html(MEASURES[name].says)}</span></td>`
-      + `<td>${whole(figure(value, MEASURES[name].unit))}</td><td>${value === null ? '' : html(worstWords(report.worst[name]))}</td></tr>`;
+    return (
+      `<tr><td><b>${name}</b> <span class="says">${html(MEASURES[name].says)}</span></td>` +
+      `<td>${whole(figure(value, MEASURES[name].unit))}</td>` +
+      `<td>${value === null ? '' : html(worstWords(report.worst[name]))}</td></tr>`
+    );
   });
-  return '<h2>Measures</h2><div class="scroll"><table class="measures"><thead><tr><th scope="col">measure</th><th scope="col">value</th>'
-    + `<th scope="col">worst, or least</th></tr></thead><tbody>${rows.join('')}</tbody></table></div>`;
+  return (
+    '<h2>Measures</h2><div class="scroll"><table class="measures">' +
+    '<thead><tr><th scope="col">measure</th><th scope="col">value</th>' +
+    `<th scope="col">worst, or least</th></tr></thead><tbody>${rows.join('')}</tbody></table></div>`
+  );
 }
 
 function runSection({ outcome, trial }: ReportInput): string {
@@ -99,5 +122,6 @@ function runSection({ outcome, trial }: ReportInput): string {
   ];
   if (trial.start !== undefined) facts.unshift(['start', html(trial.start)]);
   if (outcome.why !== undefined) facts.push(['run it again', `<code>${html(outcome.why.repeat)}</code>`]);
-  return `<h2>This run</h2><dl class="facts">${facts.map(([term, text]) => `<dt>${term}</dt><dd>${text}</dd>`).join('')}</dl>`;
+  const list = facts.map(([term, text]) => `<dt>${term}</dt><dd>${text}</dd>`).join('');
+  return `<h2>This run</h2><dl class="facts">${list}</dl>`;
 }

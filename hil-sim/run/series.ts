@@ -20,7 +20,7 @@ export interface Series {
   readonly bins: number;
   readonly pointS: number;
   readonly points: number;
-  /** By vehicle × bins: sums of squares until `finishSeries`, then root mean squares; NaN where nothing is. */
+  /** By vehicle × bins: sums of squares, after `finishSeries` root mean squares; NaN where nothing is. */
   readonly binned: Readonly<Record<Binned, Float64Array>>;
   readonly binCounts: Readonly<Record<Binned, Uint32Array>>;
   readonly sampled: Readonly<Record<Sampled, Float64Array>>;
@@ -43,7 +43,10 @@ export function startSeries(fleetSize: number, durationS: number): Series {
   const counts = (): Uint32Array => new Uint32Array(fleetSize * bins);
   const sums = (): Float64Array => column(fleetSize * bins);
   return {
-    binS, bins, pointS, points,
+    binS,
+    bins,
+    pointS,
+    points,
     binned: { crossTrack: sums(), gap: sums(), current: sums(), position: sums() },
     binCounts: { crossTrack: counts(), gap: counts(), current: counts(), position: counts() },
     sampled: { depth: nothing(), speed: nothing(), battery: nothing() },

@@ -60,7 +60,10 @@ export function trackOf(loop: Loop): Track {
   }
   assert(alongM[CHORDS]! > 0, 'a loop has a length');
   return {
-    lengthM: alongM[CHORDS]!, eastM, northM, alongM,
+    lengthM: alongM[CHORDS]!,
+    eastM,
+    northM,
+    alongM,
     blocks: bounds(eastM, northM, CHORDS_A_BLOCK),
     pieces: bounds(eastM, northM, CHORDS_A_PIECE),
   };
@@ -83,7 +86,7 @@ function bounds(eastM: Float64Array, northM: Float64Array, size: number): Float6
   return circles;
 }
 
-/** Where a search ended: `place` holds distance to the loop in m and phase; `chord` starts the next search. */
+/** Where a search ended: `place` holds distance to the loop in m, and phase; `chord` starts the next. */
 export interface Nearest {
   readonly place: Float64Array;
   readonly chord: Int32Array;
@@ -107,7 +110,8 @@ export function findNearest(track: Track, eastM: number, northM: number, nearest
     for (let piece = block * pieces; piece < (block + 1) * pieces; piece++) {
       if (isBeyond(track.pieces, piece, eastM, northM, best)) continue;
       const end = (piece + 1) * CHORDS_A_PIECE;
-      for (let chord = piece * CHORDS_A_PIECE; chord < end; chord++) tryChord(track, eastM, northM, chord, best);
+      for (let chord = piece * CHORDS_A_PIECE; chord < end; chord++)
+        tryChord(track, eastM, northM, chord, best);
     }
   }
   const phase = best[1]! / track.lengthM;
@@ -117,7 +121,13 @@ export function findNearest(track: Track, eastM: number, northM: number, nearest
 }
 
 /** Whether a bounding circle lies wholly farther away than the best so far. */
-function isBeyond(circles: Float64Array, run: number, eastM: number, northM: number, best: Float64Array): boolean {
+function isBeyond(
+  circles: Float64Array,
+  run: number,
+  eastM: number,
+  northM: number,
+  best: Float64Array,
+): boolean {
   const east = eastM - circles[3 * run]!;
   const north = northM - circles[3 * run + 1]!;
   const withinM = best[3]! + circles[3 * run + 2]!;

@@ -3,8 +3,10 @@ import type { Trial } from '../trial/schema.ts';
 import type { TickRecord } from './record.ts';
 import { findNearest, startNearest, trackOf, type Nearest, type Track } from './track.ts';
 
-export const TRACKS_HEADER = 't_s,vehicle,state,east_m,north_m,depth_m,heading_deg,speed_mps,current_east_mps,'
-  + 'current_north_mps,est_east_m,est_north_m,est_current_east_mps,est_current_north_mps,phase,est_phase,battery_pct';
+export const TRACKS_HEADER =
+  't_s,vehicle,state,east_m,north_m,depth_m,heading_deg,speed_mps,current_east_mps,' +
+  'current_north_mps,est_east_m,est_north_m,est_current_east_mps,est_current_north_mps,' +
+  'phase,est_phase,battery_pct';
 
 const EVERY_S = 10;
 const TOLERANCE_S = 1e-6;
@@ -20,7 +22,12 @@ export interface TracksCsv {
 
 export function startTracksCsv(trial: Trial): TracksCsv {
   const names = trial.fleet.vehicles.map((vehicle) => vehicle.name);
-  return { names, track: trackOf(trial.mission.loop), nearest: names.map(() => startNearest()), next: new Float64Array(1) };
+  return {
+    names,
+    track: trackOf(trial.mission.loop),
+    nearest: names.map(() => startNearest()),
+    next: new Float64Array(1),
+  };
 }
 
 /** The rows of this tick, each with its line end; empty if it is not yet time. */
@@ -37,15 +44,27 @@ function row(csv: TracksCsv, { timeS, truth, steers }: TickRecord, index: number
   const nearest = csv.nearest[index]!;
   findNearest(csv.track, truth.eastM[index]!, truth.northM[index]!, nearest);
   const headingDeg = (truth.headingRad[index]! * DEG_PER_RAD).toFixed(2);
-  return [
-    seconds(timeS), csv.names[index], state,
-    fixed(truth.eastM[index]!, 2), fixed(truth.northM[index]!, 2), fixed(truth.depthM[index]!, 2),
-    headingDeg === '360.00' ? '0.00' : headingDeg, fixed(truth.speedMps[index]!, 3),
-    fixed(truth.currentEastMps[index]!, 4), fixed(truth.currentNorthMps[index]!, 4),
-    fixed(estimate.east_m, 2), fixed(estimate.north_m, 2),
-    fixed(estimate.currentEast_mps, 4), fixed(estimate.currentNorth_mps, 4),
-    phase(nearest.place[1]!), phase(estimate.phase), fixed(100 * truth.battery[index]!, 2),
-  ].join(',') + '\n';
+  return (
+    [
+      seconds(timeS),
+      csv.names[index],
+      state,
+      fixed(truth.eastM[index]!, 2),
+      fixed(truth.northM[index]!, 2),
+      fixed(truth.depthM[index]!, 2),
+      headingDeg === '360.00' ? '0.00' : headingDeg,
+      fixed(truth.speedMps[index]!, 3),
+      fixed(truth.currentEastMps[index]!, 4),
+      fixed(truth.currentNorthMps[index]!, 4),
+      fixed(estimate.east_m, 2),
+      fixed(estimate.north_m, 2),
+      fixed(estimate.currentEast_mps, 4),
+      fixed(estimate.currentNorth_mps, 4),
+      phase(nearest.place[1]!),
+      phase(estimate.phase),
+      fixed(100 * truth.battery[index]!, 2),
+    ].join(',') + '\n'
+  );
 }
 
 /** Five places, never rounded up to a whole turn. */

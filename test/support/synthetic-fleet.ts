@@ -30,11 +30,15 @@ export function fleetRecord(trial: Trial, tick: number): TickRecord {
     const learned = Math.exp(-timeS / 3000);
     const off = 0.02 + 0.15 * learned;
     return {
-      eastM, northM,
+      eastM,
+      northM,
       depthM: Math.min(40, 0.3 * timeS),
       headingRad: 2 * Math.PI * phase,
       current: [water[0]!, water[1]!],
-      believedCurrent: [water[0]! + off * Math.sin(timeS / 400 + index), water[1]! + off * Math.cos(timeS / 500 + index)],
+      believedCurrent: [
+        water[0]! + off * Math.sin(timeS / 400 + index),
+        water[1]! + off * Math.cos(timeS / 500 + index),
+      ],
       believedOff: [6 * Math.sin(timeS / 150 + index), 6 * Math.cos(timeS / 210 + index)],
       energyJ: (85 + 2 * index) * timeS,
       battery: 1 - ((85 + 2 * index) * timeS) / 7.2e6,
@@ -65,6 +69,13 @@ function hearingsOf(timeS: number, count: number): Hearing[] {
     .filter((toIndex) => toIndex !== fromIndex)
     .map((toIndex): Hearing => {
       const isLost = (Math.floor(timeS / 4) * 7 + toIndex * 3) % 6 === 0;
-      return { sentS: timeS, heardS: isLost ? null : timeS + 1.4, fromIndex, toIndex, bytes: 32, fate: isLost ? 'lost' : 'heard' };
+      return {
+        sentS: timeS,
+        heardS: isLost ? null : timeS + 1.4,
+        fromIndex,
+        toIndex,
+        bytes: 32,
+        fate: isLost ? 'lost' : 'heard',
+      };
     });
 }

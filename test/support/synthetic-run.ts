@@ -20,7 +20,8 @@ export function trialOf(fleetSize: number, change: Record<string, unknown> = {})
     mission: missionOf(),
     fleet: {
       vehicles: NAMES.slice(0, fleetSize).map((name, index) => ({
-        name, start: { east: '-900 m', north: `${150 - 90 * index} m`, heading: '40 deg' },
+        name,
+        start: { east: '-900 m', north: `${150 - 90 * index} m`, heading: '40 deg' },
       })),
     },
     water: { currents: [] },
@@ -67,7 +68,9 @@ export function flatMap(east: number, north: number, sigma = 0.05): MapMessage {
 
 /** The record of one tick from its moments, by fleet index. */
 export function recordOf(
-  tick: number, moments: readonly Moment[], more: { tickS?: number; hearings?: readonly Hearing[] } = {},
+  tick: number,
+  moments: readonly Moment[],
+  more: { tickS?: number; hearings?: readonly Hearing[] } = {},
 ): TickRecord {
   const column = (of: (moment: Moment) => number): Float64Array => Float64Array.from(moments, of);
   const truth: Truth = {
@@ -121,14 +124,19 @@ function steerOf(tick: number, moment: Moment): Steer {
     estimate: {
       east_m: moment.eastM + (moment.believedOff?.[0] ?? 0),
       north_m: moment.northM + (moment.believedOff?.[1] ?? 0),
-      varEast_m2: 12.3 + Math.sin(tick), covEastNorth_m2: 0.1 * Math.cos(tick), varNorth_m2: 11.1 + Math.sin(tick / 3),
+      varEast_m2: 12.3 + Math.sin(tick),
+      covEastNorth_m2: 0.1 * Math.cos(tick),
+      varNorth_m2: 11.1 + Math.sin(tick / 3),
       currentEast_mps: moment.believedCurrent?.[0] ?? 0,
       currentNorth_mps: moment.believedCurrent?.[1] ?? 0,
-      varCurrentEast_m2ps2: 0.0025 + 1e-4 * Math.sin(tick), covCurrentEastNorth_m2ps2: 1e-5 * Math.sin(tick / 2),
+      varCurrentEast_m2ps2: 0.0025 + 1e-4 * Math.sin(tick),
+      covCurrentEastNorth_m2ps2: 1e-5 * Math.sin(tick / 2),
       varCurrentNorth_m2ps2: 0.0025 + 1e-4 * Math.cos(tick),
       phase: 0.123456789,
-      compassBias_deg: 0.5 * Math.sin(tick / 100), compassBiasSigma_deg: 0.31 + 0.01 * Math.sin(tick / 50),
-      logScale: 0.01 * Math.sin(tick / 70), logScaleSigma: 0.0081,
+      compassBias_deg: 0.5 * Math.sin(tick / 100),
+      compassBiasSigma_deg: 0.31 + 0.01 * Math.sin(tick / 50),
+      logScale: 0.01 * Math.sin(tick / 70),
+      logScaleSigma: 0.0081,
       notesHeld: Math.floor(tick / 60),
     },
     map: moment.map ?? null,
@@ -142,7 +150,8 @@ export const still = (_eastM: number, _northM: number, _timeS: number, out: Floa
 };
 
 /** Water that flows one way everywhere. */
-export const flowing = (east: number, north: number) =>
+export const flowing =
+  (east: number, north: number) =>
   (_eastM: number, _northM: number, _timeS: number, out: Float64Array): void => {
     out[0] = east;
     out[1] = north;

@@ -1,6 +1,14 @@
 /** The run folder: fixed names and columns, and a log that can be read however its run ended. */
 import {
-  closeSync, mkdirSync, mkdtempSync, openSync, readFileSync, readdirSync, rmSync, truncateSync, writeFileSync,
+  closeSync,
+  mkdirSync,
+  mkdtempSync,
+  openSync,
+  readFileSync,
+  readdirSync,
+  rmSync,
+  truncateSync,
+  writeFileSync,
 } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
@@ -18,24 +26,44 @@ import { steerSchema } from '../../../messages/steer.ts';
 import { onRing, recordOf, still, trialOf } from '../../support/synthetic-run.ts';
 
 let folder: string;
-beforeEach(() => { folder = mkdtempSync(join(tmpdir(), 'drywake-folder-')); });
-afterEach(() => { rmSync(folder, { recursive: true, force: true }); });
+beforeEach(() => {
+  folder = mkdtempSync(join(tmpdir(), 'drywake-folder-'));
+});
+afterEach(() => {
+  rmSync(folder, { recursive: true, force: true });
+});
 
-const trial = trialOf(2, { limits: { crossTrackRms: '25 m' }, mission: {
-  loop: { shape: 'circle', centre: { east: '0 m', north: '0 m' }, radius: '600 m', turn: 'clockwise' },
-  keepIn: { shape: 'circle', centre: { east: '0 m', north: '0 m' }, radius: '2000 m' },
-  recovery: { east: '-1500 m', north: '0 m' },
-} });
+const trial = trialOf(2, {
+  limits: { crossTrackRms: '25 m' },
+  mission: {
+    loop: { shape: 'circle', centre: { east: '0 m', north: '0 m' }, radius: '600 m', turn: 'clockwise' },
+    keepIn: { shape: 'circle', centre: { east: '0 m', north: '0 m' }, radius: '2000 m' },
+    recovery: { east: '-1500 m', north: '0 m' },
+  },
+});
 
 const heard: Hearing = { sentS: 12.25, heardS: 13.6789, fromIndex: 0, toIndex: 1, bytes: 32, fate: 'heard' };
 const lost: Hearing = { sentS: 16, heardS: null, fromIndex: 1, toIndex: 0, bytes: 32, fate: 'lost' };
 
 function recordAt(tick: number) {
-  return recordOf(tick, [
-    { ...onRing(610, 0.25), depthM: 40, headingRad: Math.PI, speedMps: 1.25, current: [0.1, -0.2], believedCurrent: [0.125, -0.25],
-      believedOff: [3, 4], battery: 0.875, state: 'holding' },
-    { ...onRing(600, 0.999999), headingRad: 2 * Math.PI - 1e-9, state: 'joining' },
-  ], { hearings: tick === 14 ? [heard] : tick === 17 ? [lost] : [] });
+  return recordOf(
+    tick,
+    [
+      {
+        ...onRing(610, 0.25),
+        depthM: 40,
+        headingRad: Math.PI,
+        speedMps: 1.25,
+        current: [0.1, -0.2],
+        believedCurrent: [0.125, -0.25],
+        believedOff: [3, 4],
+        battery: 0.875,
+        state: 'holding',
+      },
+      { ...onRing(600, 0.999999), headingRad: 2 * Math.PI - 1e-9, state: 'joining' },
+    ],
+    { hearings: tick === 14 ? [heard] : tick === 17 ? [lost] : [] },
+  );
 }
 
 async function wholeRun(path: string, ticks: number): Promise<void> {
@@ -46,9 +74,19 @@ async function wholeRun(path: string, ticks: number): Promise<void> {
     run.take(recordAt(tick));
   }
   const report = finishMeasures(measures);
-  await run.close(buildOutcome({
-    trial, report, digest: 'a'.repeat(64), ticks, wall_s: 0.5, version: '0.1.0', node: 'v20', repeat: 'npx drywake bench x.yaml',
-  }), '<!doctype html>');
+  await run.close(
+    buildOutcome({
+      trial,
+      report,
+      digest: 'a'.repeat(64),
+      ticks,
+      wall_s: 0.5,
+      version: '0.1.0',
+      node: 'v20',
+      repeat: 'npx drywake bench x.yaml',
+    }),
+    '<!doctype html>',
+  );
 }
 
 async function linesOf(path: string): Promise<LogLine[]> {
@@ -60,11 +98,19 @@ async function linesOf(path: string): Promise<LogLine[]> {
 const read = (name: string): string => readFileSync(join(folder, 'run', name), 'utf8');
 
 describe('the run folder', () => {
-  beforeEach(async () => { await wholeRun(join(folder, 'run'), 31); });
+  beforeEach(async () => {
+    await wholeRun(join(folder, 'run'), 31);
+  });
 
   it('holds the names that tools outside rely on', () => {
     expect(readdirSync(join(folder, 'run')).sort()).toEqual([
-      'frames.csv', 'junit.xml', 'log.ndjson.gz', 'outcome.json', 'report.html', 'tracks.csv', 'trial.yaml',
+      'frames.csv',
+      'junit.xml',
+      'log.ndjson.gz',
+      'outcome.json',
+      'report.html',
+      'tracks.csv',
+      'trial.yaml',
     ]);
     expect(read('trial.yaml')).toBe('title: a trial\n');
     expect(outcomeSchema.parse(JSON.parse(read('outcome.json'))).verdict).toBe('fail');
@@ -72,20 +118,28 @@ describe('the run folder', () => {
 
   it('has tracks of one row per vehicle per ten seconds, in the columns of DESIGN section 6', () => {
     const rows = read('tracks.csv').split('\n');
-    expect(rows[0]).toBe('t_s,vehicle,state,east_m,north_m,depth_m,heading_deg,speed_mps,current_east_mps,current_north_mps,'
-      + 'est_east_m,est_north_m,est_current_east_mps,est_current_north_mps,phase,est_phase,battery_pct');
+    expect(rows[0]).toBe(
+      't_s,vehicle,state,east_m,north_m,depth_m,heading_deg,speed_mps,current_east_mps,current_north_mps,' +
+        'est_east_m,est_north_m,est_current_east_mps,est_current_north_mps,phase,est_phase,battery_pct',
+    );
     expect(rows).toHaveLength(1 + 4 * 2 + 1);
-    expect(rows[3]).toBe('10,amber,holding,610.00,0.00,40.00,180.00,1.250,0.1000,-0.2000,613.00,4.00,0.1250,-0.2500,'
-      + '0.25000,0.12346,87.50');
+    expect(rows[3]).toBe(
+      '10,amber,holding,610.00,0.00,40.00,180.00,1.250,0.1000,-0.2000,613.00,4.00,0.1250,-0.2500,' +
+        '0.25000,0.12346,87.50',
+    );
     // A heading that rounds to 360 is 0, and a phase that rounds to a whole turn is 0.
-    expect(rows[4]).toBe('10,cobalt,joining,0.00,600.00,40.00,0.00,1.200,0.0000,0.0000,0.00,600.00,0.0000,0.0000,'
-      + '0.00000,0.12346,100.00');
+    expect(rows[4]).toBe(
+      '10,cobalt,joining,0.00,600.00,40.00,0.00,1.200,0.0000,0.0000,0.00,600.00,0.0000,0.0000,' +
+        '0.00000,0.12346,100.00',
+    );
     expect(rows.at(-1)).toBe('');
   });
 
   it('has frames of one row per frame and hearer, with no time for one never heard', () => {
-    expect(read('frames.csv')).toBe('t_sent_s,t_heard_s,from,to,bytes,fate\n'
-      + '12.25,13.679,amber,cobalt,32,heard\n16,,cobalt,amber,32,lost\n');
+    expect(read('frames.csv')).toBe(
+      't_sent_s,t_heard_s,from,to,bytes,fate\n' +
+        '12.25,13.679,amber,cobalt,32,heard\n16,,cobalt,amber,32,lost\n',
+    );
   });
 
   it('has a log that gives back every mission, sense and steer to the last bit', async () => {
@@ -103,7 +157,9 @@ describe('the run folder', () => {
 
   it('is never written to again', () => {
     expect(() => openRunFolder(join(folder, 'run'), trial, 'x')).toThrow(FolderProblem);
-    expect(() => openRunFolder(join(folder, 'run'), trial, 'x')).toThrow(/holds a run, but a run needs a new or empty folder/);
+    expect(() => openRunFolder(join(folder, 'run'), trial, 'x')).toThrow(
+      /holds a run, but a run needs a new or empty folder/,
+    );
     expect(read('trial.yaml')).toBe('title: a trial\n');
   });
 });
@@ -131,7 +187,10 @@ describe('a run that did not come to its end', () => {
     for (let tick = 0; tick < 12; tick++) run.take(recordAt(tick));
     await run.abandon();
     expect(readdirSync(path).sort()).toEqual(['frames.csv', 'log.ndjson.gz', 'tracks.csv', 'trial.yaml']);
-    expect((await linesOf(path)).map((line) => ('tick' in line ? line.tick : 'start'))).toEqual(['start', ...Array(12).keys()]);
+    expect((await linesOf(path)).map((line) => ('tick' in line ? line.tick : 'start'))).toEqual([
+      'start',
+      ...Array(12).keys(),
+    ]);
   });
 
   it('has put its lines into the file within a second, with nobody closing it', async () => {
@@ -141,7 +200,9 @@ describe('a run that did not come to its end', () => {
     const before = performance.now();
     let ticks = 0;
     while (ticks < 12 && performance.now() - before < 5000) {
-      await new Promise((resolve) => { setTimeout(resolve, 20); });
+      await new Promise((resolve) => {
+        setTimeout(resolve, 20);
+      });
       ticks = (await linesOf(path)).filter((line) => 'tick' in line).length;
     }
     expect(ticks).toBe(12);
@@ -154,7 +215,12 @@ describe('a run that did not come to its end', () => {
     const path = join(folder, 'log.ndjson.gz');
     const file = openSync(path, 'wx');
     const log = new LogWriter(file);
-    const written = Array.from({ length: 40 }, (_, tick) => ({ tick, senses: [], steers: [], text: 'é'.repeat(tick) }));
+    const written = Array.from({ length: 40 }, (_, tick) => ({
+      tick,
+      senses: [],
+      steers: [],
+      text: 'é'.repeat(tick),
+    }));
     for (const line of written) {
       log.add(JSON.stringify(line));
       if (line.tick % 8 === 7) log.flush();
@@ -164,7 +230,9 @@ describe('a run that did not come to its end', () => {
     const bytes = readFileSync(path);
     expect(gunzipSync(bytes).toString('utf8').split('\n')).toHaveLength(41);
     // Where each whole member ends: the magic number of the next one, or the end.
-    const ends = [...bytes.keys()].filter((at) => bytes.readUIntBE(Math.min(at, bytes.length - 3), 3) === 0x1f8b08).slice(1);
+    const ends = [...bytes.keys()]
+      .filter((at) => bytes.readUIntBE(Math.min(at, bytes.length - 3), 3) === 0x1f8b08)
+      .slice(1);
     expect(ends).toHaveLength(4);
     let least = 0;
     for (let cut = bytes.length; cut > 0; cut -= 7) {

@@ -10,11 +10,22 @@ import type { Water } from '../../../hil-sim/run/maps.ts';
 import { findNearest, placeAt, startNearest, trackOf } from '../../../hil-sim/run/track.ts';
 import type { Hearing } from '../../../hil-sim/sea/sea.ts';
 import type { Trial } from '../../../hil-sim/trial/schema.ts';
-import { flatMap, flowing, missionOf, onRing, recordOf, still, trialOf, type Moment } from '../../support/synthetic-run.ts';
+import {
+  flatMap,
+  flowing,
+  missionOf,
+  onRing,
+  recordOf,
+  still,
+  trialOf,
+  type Moment,
+} from '../../support/synthetic-run.ts';
 
 /** Measures of a run whose vehicles are where `at` says, for `ticks` ticks of 1 s. */
 function run(
-  trial: Trial, ticks: number, at: (timeS: number) => Moment[],
+  trial: Trial,
+  ticks: number,
+  at: (timeS: number) => Moment[],
   more: { water?: Water; hearings?: (tick: number) => Hearing[]; tickS?: number } = {},
 ): MeasureReport {
   const measures = startMeasures(trial, more.water ?? still);
@@ -26,8 +37,10 @@ function run(
 }
 
 /** Five evenly spaced at a radius, going round at 1.2 m/s on 600 m: 0.0003183 turns a second. */
-const evenRing = (radiusM: number) => (timeS: number): Moment[] =>
-  [0, 1, 2, 3, 4].map((index) => onRing(radiusM, (index / 5 + timeS * 0.00031831) % 1));
+const evenRing =
+  (radiusM: number) =>
+  (timeS: number): Moment[] =>
+    [0, 1, 2, 3, 4].map((index) => onRing(radiusM, (index / 5 + timeS * 0.00031831) % 1));
 
 describe('the loop as the bench sees it', () => {
   it('has the length of the circle to one part in a million', () => {
@@ -60,31 +73,38 @@ describe('the loop as the bench sees it', () => {
 
   it('finds the same nearest point wherever the search starts, and it is R − r from any ring', () => {
     const track = trackOf(trialOf(1).mission.loop);
-    const place = fc.record({ radiusM: fc.double({ min: 1, max: 4000, noNaN: true }), phase: fc.double({ min: 0, max: 0.999999, noNaN: true }) });
-    fc.assert(fc.property(place, fc.integer({ min: 0, max: 4095 }), ({ radiusM, phase }, chord) => {
-      const { eastM, northM } = onRing(radiusM, phase);
-      const nearest = startNearest();
-      nearest.chord[0] = chord;
-      findNearest(track, eastM, northM, nearest);
-      expect(Math.abs(nearest.place[0]! - Math.abs(radiusM - 600))).toBeLessThan(2e-4); // R(1 − cos(π/4096)) = 0.18 mm
-      expect(nearest.place[1]).toBeGreaterThanOrEqual(0);
-      expect(nearest.place[1]).toBeLessThan(1);
-      const off = Math.abs(nearest.place[1]! - phase);
-      expect(Math.min(off, 1 - off)).toBeLessThan(1.3e-4); // half a chord: inside, a vertex may be nearest
-    }));
+    const place = fc.record({
+      radiusM: fc.double({ min: 1, max: 4000, noNaN: true }),
+      phase: fc.double({ min: 0, max: 0.999999, noNaN: true }),
+    });
+    fc.assert(
+      fc.property(place, fc.integer({ min: 0, max: 4095 }), ({ radiusM, phase }, chord) => {
+        const { eastM, northM } = onRing(radiusM, phase);
+        const nearest = startNearest();
+        nearest.chord[0] = chord;
+        findNearest(track, eastM, northM, nearest);
+        expect(Math.abs(nearest.place[0]! - Math.abs(radiusM - 600))).toBeLessThan(2e-4); // R(1 − cos(π/4096)) = 0.18 mm
+        expect(nearest.place[1]).toBeGreaterThanOrEqual(0);
+        expect(nearest.place[1]).toBeLessThan(1);
+        const off = Math.abs(nearest.place[1]! - phase);
+        expect(Math.min(off, 1 - off)).toBeLessThan(1.3e-4); // half a chord: inside, a vertex may be nearest
+      }),
+    );
   });
 
   it('puts the place of a phase back at that phase', () => {
     const track = trackOf(trialOf(1).mission.loop);
     const out = new Float64Array(2);
-    fc.assert(fc.property(fc.double({ min: 0, max: 0.9999999, noNaN: true }), (phase) => {
-      placeAt(track, phase, out);
-      const nearest = startNearest();
-      findNearest(track, out[0]!, out[1]!, nearest);
-      const off = Math.abs(nearest.place[1]! - phase);
-      expect(Math.min(off, 1 - off)).toBeLessThan(1e-9);
-      expect(nearest.place[0]).toBeLessThan(1e-6);
-    }));
+    fc.assert(
+      fc.property(fc.double({ min: 0, max: 0.9999999, noNaN: true }), (phase) => {
+        placeAt(track, phase, out);
+        const nearest = startNearest();
+        findNearest(track, out[0]!, out[1]!, nearest);
+        const off = Math.abs(nearest.place[1]! - phase);
+        expect(Math.min(off, 1 - off)).toBeLessThan(1e-9);
+        expect(nearest.place[0]).toBeLessThan(1e-6);
+      }),
+    );
   });
 });
 
@@ -99,7 +119,10 @@ describe('cross-track and forming up', () => {
 
   it('is the root mean square over vehicles: one of five at 20 m inside gives 20/√5', () => {
     const { values, worst, vehicles } = run(trialOf(5), 900, (timeS) =>
-      evenRing(600)(timeS).map((moment, index) => (index === 2 ? onRing(580, 0.4 + timeS * 0.00031831) : moment)));
+      evenRing(600)(timeS).map((moment, index) =>
+        index === 2 ? onRing(580, 0.4 + timeS * 0.00031831) : moment,
+      ),
+    );
     expect(values.crossTrackRms).toBeCloseTo(8.94427191, 3); // 20/√5
     expect(values.crossTrackMax).toBeCloseTo(20, 3);
     expect(worst.crossTrackRms.vehicle).toBe('jade');
@@ -115,15 +138,21 @@ describe('cross-track and forming up', () => {
   });
 
   it('starts again when one vehicle leaves for one tick before the hold is over', () => {
-    const { values, worst } = run(trialOf(5), 1300, (timeS) => evenRing(600)(timeS).map((moment, index) =>
-      (index === 3 && timeS === 500 ? onRing(680, 0.6) : moment)));
+    const { values, worst } = run(trialOf(5), 1300, (timeS) =>
+      evenRing(600)(timeS).map((moment, index) => (index === 3 && timeS === 500 ? onRing(680, 0.6) : moment)),
+    );
     expect(values.formUp_s).toBe(501);
     expect(worst.formUp_s).toMatchObject({ vehicle: 'ochre', at_s: 500 });
   });
 
   it('keeps counting a vehicle that leaves after forming up, whatever state it claims', () => {
-    const { values, worst } = run(trialOf(5), 1300, (timeS) => evenRing(600)(timeS).map((moment, index) =>
-      (index === 3 && timeS === 1000 ? { ...onRing(680, (0.6 + timeS * 0.00031831) % 1), state: 'surfacing' as const } : moment)));
+    const { values, worst } = run(trialOf(5), 1300, (timeS) =>
+      evenRing(600)(timeS).map((moment, index) =>
+        index === 3 && timeS === 1000
+          ? { ...onRing(680, (0.6 + timeS * 0.00031831) % 1), state: 'surfacing' as const }
+          : moment,
+      ),
+    );
     expect(values.formUp_s).toBe(0);
     expect(values.crossTrackMax).toBeCloseTo(80, 3);
     expect(worst.crossTrackMax).toMatchObject({ vehicle: 'ochre', at_s: 1000 });
@@ -138,7 +167,16 @@ describe('cross-track and forming up', () => {
 
   it('says null for all that counts from forming up if that never comes, and who was last out', () => {
     const { values, worst, vehicles } = run(trialOf(5), 900, evenRing(676));
-    for (const name of ['formUp_s', 'crossTrackRms', 'crossTrackMax', 'gapRms', 'currentRms', 'mapRms', 'mapSpread', 'positionRms'] as const) {
+    for (const name of [
+      'formUp_s',
+      'crossTrackRms',
+      'crossTrackMax',
+      'gapRms',
+      'currentRms',
+      'mapRms',
+      'mapSpread',
+      'positionRms',
+    ] as const) {
       expect(values[name]).toBeNull();
     }
     expect(values.separationMin).not.toBeNull();
@@ -149,7 +187,9 @@ describe('cross-track and forming up', () => {
   it('takes its bounds from the mission, and never from the limits', () => {
     const loose = missionOf({ formedUp: { crossTrack: '80 m', gap: '30 %', hold: '2 min' } });
     expect(run(trialOf(5, { mission: loose }), 200, evenRing(676)).values.formUp_s).toBe(0);
-    expect(run(trialOf(5, { limits: { crossTrackMax: '500 m' } }), 900, evenRing(676)).values.formUp_s).toBeNull();
+    expect(
+      run(trialOf(5, { limits: { crossTrackMax: '500 m' } }), 900, evenRing(676)).values.formUp_s,
+    ).toBeNull();
   });
 });
 
@@ -164,15 +204,20 @@ describe('gaps', () => {
   });
 
   it('do not depend on where phase 0 is', () => {
-    const shifted = (shift: number): number | null => run(
-      trialOf(3, { mission: missionOf({ formedUp: { crossTrack: '75 m', gap: '100 %', hold: '10 s' } }) }), 12,
-      () => [0.05, 0.3, 0.72].map((phase) => onRing(600, (phase + shift) % 1)),
-    ).values.gapRms;
+    const shifted = (shift: number): number | null =>
+      run(
+        trialOf(3, { mission: missionOf({ formedUp: { crossTrack: '75 m', gap: '100 %', hold: '10 s' } }) }),
+        12,
+        () => [0.05, 0.3, 0.72].map((phase) => onRing(600, (phase + shift) % 1)),
+      ).values.gapRms;
     // Gaps 0.25, 0.42, 0.33 against 1/3: errors −0.25, 0.26, −0.01; rms √(0.1302/3).
     expect(shifted(0)).toBeCloseTo(0.208326667, 5);
-    fc.assert(fc.property(fc.double({ min: 0, max: 0.9999, noNaN: true }), (shift) => {
-      expect(shifted(shift)).toBeCloseTo(0.208326667, 4);
-    }), { numRuns: 40 });
+    fc.assert(
+      fc.property(fc.double({ min: 0, max: 0.9999, noNaN: true }), (shift) => {
+        expect(shifted(shift)).toBeCloseTo(0.208326667, 4);
+      }),
+      { numRuns: 40 },
+    );
   });
 
   it('of a pattern have their own targets in cyclic order, whoever stands where', () => {
@@ -194,7 +239,11 @@ describe('gaps', () => {
   it('leave out a vehicle that the limits except, which still counts for separation', () => {
     const trial = trialOf(3, { limits: { except: ['jade'] } });
     // Amber and cobalt stand half a loop apart; jade lies 7 m from amber, far from any place of its own.
-    const { values, excepted, vehicles } = run(trial, 900, () => [onRing(600, 0), onRing(600, 0.5), onRing(607, 0)]);
+    const { values, excepted, vehicles } = run(trial, 900, () => [
+      onRing(600, 0),
+      onRing(600, 0.5),
+      onRing(607, 0),
+    ]);
     expect(excepted).toEqual(['jade']);
     expect(values.formUp_s).toBe(0);
     expect(values.gapRms).toBeCloseTo(0, 6);
@@ -218,12 +267,14 @@ describe('separation', () => {
 
 describe('beliefs', () => {
   it('of current and position are compared with the truth as vectors', () => {
-    const { values, worst } = run(trialOf(5), 900, (timeS) => evenRing(600)(timeS).map((moment, index) => ({
-      ...moment,
-      current: [0.1, 0.2] as const,
-      believedCurrent: index === 1 ? [0.13, 0.24] as const : [0.1, 0.2] as const, // off by 0.05
-      believedOff: index === 4 ? [6, 8] as const : [0, 0] as const, // off by 10 m
-    })));
+    const { values, worst } = run(trialOf(5), 900, (timeS) =>
+      evenRing(600)(timeS).map((moment, index) => ({
+        ...moment,
+        current: [0.1, 0.2] as const,
+        believedCurrent: index === 1 ? ([0.13, 0.24] as const) : ([0.1, 0.2] as const), // off by 0.05
+        believedOff: index === 4 ? ([6, 8] as const) : ([0, 0] as const), // off by 10 m
+      })),
+    );
     expect(values.currentRms).toBeCloseTo(0.0223606798, 8); // 0.05/√5
     expect(values.positionRms).toBeCloseTo(4.472135955, 8); // 10/√5
     expect(worst.currentRms.vehicle).toBe('cobalt');
@@ -232,10 +283,16 @@ describe('beliefs', () => {
 
   it('of the map are compared with the water and with the mean of the fleet', () => {
     const trial = trialOf(2);
-    const { values, worst, maps } = run(trial, 900, (timeS) => [0, 1].map((index) => ({
-      ...onRing(600, index / 2),
-      map: timeS % 60 === 0 ? flatMap(index === 0 ? 0.13 : 0.07, 0.3) : null,
-    })), { water: flowing(0.1, 0.26) });
+    const { values, worst, maps } = run(
+      trial,
+      900,
+      (timeS) =>
+        [0, 1].map((index) => ({
+          ...onRing(600, index / 2),
+          map: timeS % 60 === 0 ? flatMap(index === 0 ? 0.13 : 0.07, 0.3) : null,
+        })),
+      { water: flowing(0.1, 0.26) },
+    );
     // Amber off by (0.03, 0.04), cobalt by (−0.03, 0.04): 0.05 each. The mean is (0.10, 0.30): 0.03 each.
     expect(values.mapRms).toBeCloseTo(0.05, 9);
     expect(values.mapSpread).toBeCloseTo(0.03, 9);
@@ -245,36 +302,55 @@ describe('beliefs', () => {
 
   it('of the map are put where the phases of the loop are', () => {
     // Water that flows east by one thousandth of the place's northing; the map says so for a clockwise ring.
-    const water: Water = (_eastM, northM, _timeS, out) => { out[0] = northM / 1000; out[1] = 0; };
+    const water: Water = (_eastM, northM, _timeS, out) => {
+      out[0] = northM / 1000;
+      out[1] = 0;
+    };
     const east = Array.from({ length: 64 }, (_, point) => 0.6 * Math.cos((2 * Math.PI * point) / 64));
     const map = { ...flatMap(0, 0), east_mps: east };
-    const { values } = run(trialOf(1), 900, (timeS) => [{ ...onRing(600, 0), map: timeS % 60 === 0 ? map : null }], { water });
+    const { values } = run(
+      trialOf(1),
+      900,
+      (timeS) => [{ ...onRing(600, 0), map: timeS % 60 === 0 ? map : null }],
+      { water },
+    );
     expect(values.mapRms).toBeLessThan(1e-6);
   });
 });
 
 describe('frames and the rest', () => {
-  const hearing = (sentS: number, toIndex: number, fate: Hearing['fate']): Hearing =>
-    ({ sentS, heardS: fate === 'lost' ? null : sentS + 1, fromIndex: 0, toIndex, bytes: 32, fate });
+  const hearing = (sentS: number, toIndex: number, fate: Hearing['fate']): Hearing => ({
+    sentS,
+    heardS: fate === 'lost' ? null : sentS + 1,
+    fromIndex: 0,
+    toIndex,
+    bytes: 32,
+    fate,
+  });
 
   it('count a frame once, a hearer once, and a repeat not at all', () => {
-    const { values, vehicles } = run(trialOf(3), 100, () => [0, 1, 2].map((index) => onRing(600, index / 3)), {
-      hearings: (tick) => {
-        if (tick === 10) return [hearing(8, 1, 'heard'), hearing(8, 2, 'lost')];
-        if (tick === 14) return [hearing(8, 1, 'refused')]; // the repeat
-        if (tick === 30) return [hearing(28, 1, 'heard'), hearing(28, 2, 'heard')];
-        return [];
+    const { values, vehicles } = run(
+      trialOf(3),
+      100,
+      () => [0, 1, 2].map((index) => onRing(600, index / 3)),
+      {
+        hearings: (tick) => {
+          if (tick === 10) return [hearing(8, 1, 'heard'), hearing(8, 2, 'lost')];
+          if (tick === 14) return [hearing(8, 1, 'refused')]; // the repeat
+          if (tick === 30) return [hearing(28, 1, 'heard'), hearing(28, 2, 'heard')];
+          return [];
+        },
       },
-    });
+    );
     expect(values.framesSent).toBe(2);
     expect(values.deliveryRatio).toBe(0.75);
     expect(vehicles.map((vehicle) => vehicle.deliveryRatio)).toEqual([null, 1, 0.5]);
   });
 
   it('sum the energy of the fleet at the end, in watt hours', () => {
-    const { values, worst } = run(trialOf(2), 10, (timeS) => [1, 3].map((share) => ({
-      ...onRing(600, share / 5), energyJ: share * 3600 * (timeS + 1),
-    })));
+    const { values, worst } = run(trialOf(2), 10, (timeS) =>
+      [1, 3].map((share) => ({ ...onRing(600, share / 5), energyJ: share * 3600 * (timeS + 1) })),
+    );
     expect(values.energy_Wh).toBeCloseTo(40, 9); // (1 + 3)·10 Wh
     expect(worst.energy_Wh.vehicle).toBe('cobalt');
   });

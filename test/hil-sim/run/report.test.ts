@@ -11,18 +11,38 @@ import { NAMES, trialOf } from '../../support/synthetic-run.ts';
 import { fleetRecord, tidalWater } from '../../support/synthetic-fleet.ts';
 
 const LIMITS = {
-  formUpWithin: '60 min', crossTrackRms: '6 m', crossTrackMax: '90 m', gapRms: '20 %', separationMin: '30 m',
-  currentRms: '0.06 m/s', mapRms: '0.05 m/s', mapSpread: '0.05 m/s', positionRms: '10 m', deliveryRatioMin: '60 %',
-  energy: '9 kWh', lateTicks: 0,
+  formUpWithin: '60 min',
+  crossTrackRms: '6 m',
+  crossTrackMax: '90 m',
+  gapRms: '20 %',
+  separationMin: '30 m',
+  currentRms: '0.06 m/s',
+  mapRms: '0.05 m/s',
+  mapSpread: '0.05 m/s',
+  positionRms: '10 m',
+  deliveryRatioMin: '60 %',
+  energy: '9 kWh',
+  lateTicks: 0,
 };
 
 function inputOf(hours: number, fleetSize = 5, change: Record<string, unknown> = {}): ReportInput {
-  const trial = trialOf(fleetSize, { title: 'Ring <b>one</b> & "two"', duration: `${hours} h`, limits: LIMITS, ...change });
+  const trial = trialOf(fleetSize, {
+    title: 'Ring <b>one</b> & "two"',
+    duration: `${hours} h`,
+    limits: LIMITS,
+    ...change,
+  });
   const measures = startMeasures(trial, tidalWater);
   for (let tick = 0; tick < hours * 3600; tick++) takeTick(measures, fleetRecord(trial, tick));
   const report = finishMeasures(measures);
   const outcome: Outcome = buildOutcome({
-    trial, report, digest: 'c0ffee00'.repeat(8), ticks: hours * 3600, wall_s: 2, version: '0.1.0', node: 'v20.20.2',
+    trial,
+    report,
+    digest: 'c0ffee00'.repeat(8),
+    ticks: hours * 3600,
+    wall_s: 2,
+    version: '0.1.0',
+    node: 'v20.20.2',
     repeat: 'npx drywake bench ring.yaml --seed 41',
   });
   return { trial, outcome, report };
@@ -55,7 +75,9 @@ describe('the report', () => {
     Object.keys(LIMITS).forEach((name, index) => expect(rows[index]).toContain(name));
     const value = input.outcome.limits[1]!.value!;
     expect(rows[1]).toContain(`${value.toFixed(2)} mat most 6.00 m−${(value - 6).toFixed(2)} mnot met`);
-    expect(rows.filter((row) => row.includes('not met')).length).toBe(input.outcome.limits.filter(({ met }) => !met).length);
+    expect(rows.filter((row) => row.includes('not met')).length).toBe(
+      input.outcome.limits.filter(({ met }) => !met).length,
+    );
   });
 
   it('says every measure and every vehicle in words', () => {
@@ -77,7 +99,9 @@ describe('the report', () => {
   });
 
   it('fetches nothing and runs nothing', () => {
-    const outside = page.replaceAll('http://www.w3.org/2000/svg', '').replaceAll('http://www.w3.org/1999/xlink', '');
+    const outside = page
+      .replaceAll('http://www.w3.org/2000/svg', '')
+      .replaceAll('http://www.w3.org/1999/xlink', '');
     expect(outside.match(/https?:[^"]*/g)).toBeNull();
     expect(outside.match(/<script|<link|<img|<iframe|@import|\bsrc=|\bon[a-z]+="/gi)).toBeNull();
     expect([...page.matchAll(/url\(([^)]*)\)/g)].every(([, target]) => target!.startsWith('#'))).toBe(true);
@@ -122,7 +146,14 @@ describe('the report', () => {
     takeTick(measures, { ...record, hearings: [] });
     const report = finishMeasures(measures);
     const outcome = buildOutcome({
-      trial, report, digest: '0'.repeat(64), ticks: 1, wall_s: 0, version: '0', node: 'v20', repeat: 'again',
+      trial,
+      report,
+      digest: '0'.repeat(64),
+      ticks: 1,
+      wall_s: 0,
+      version: '0',
+      node: 'v20',
+      repeat: 'again',
     });
     const words = plain(parseHTML(renderReport({ trial, outcome, report })).document.body.textContent);
     expect(words).toContain('Pass: the trial sets no limits.');
@@ -132,7 +163,10 @@ describe('the report', () => {
 
 describe('marks of vehicles', () => {
   it('differ in shape or filling for all sixteen, so that black and white will do', () => {
-    const looks = Array.from({ length: 16 }, (_, index) => `${markOf(index).path(5)} ${markOf(index).isHollow}`);
+    const looks = Array.from(
+      { length: 16 },
+      (_, index) => `${markOf(index).path(5)} ${markOf(index).isHollow}`,
+    );
     expect(new Set(looks).size).toBe(16);
   });
 });
