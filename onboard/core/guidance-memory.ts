@@ -9,6 +9,7 @@ import type { Order } from '../../messages/sense.ts';
 import type { Reason } from '../../messages/steer.ts';
 import type { SpeedRange } from './common-speed.ts';
 import type { WaterOrder } from './course.ts';
+import { startTraffic, type Traffic } from './keep-clear.ts';
 import { homePoint, joiningDepthM } from './layers.ts';
 import { makeLoop, type Loop, type LoopPlace } from './loop.ts';
 import { startPattern, type Pattern } from './pattern.ts';
@@ -68,6 +69,10 @@ export interface Memory {
   beganOnLoop: boolean;
   /** Frames taken in when the claims were last looked at. */
   newsSeen: number;
+  /** Time of the last change of state. */
+  changedAtS: number;
+  /** Whether it may leave the layer of joining for the depth of the line. */
+  mayDescend: boolean;
   batteryLow: boolean;
   driftMostMps: number;
 }
@@ -86,6 +91,7 @@ export interface Guidance {
   readonly at: LoopPlace;
   readonly order: WaterOrder;
   readonly point: Float64Array;
+  readonly traffic: Traffic;
   readonly memory: Memory;
 }
 
@@ -113,9 +119,10 @@ export function startGuidance(mission: Mission): Guidance {
     at: { phase: 0, crossTrackM: 0 },
     order: { headingRad: 0, speedMps: 0, overpowered: false },
     point: new Float64Array(2),
+    traffic: startTraffic(fleet.length),
     memory: {
       state: 'waiting', reason: 'start', place: selfIndex, startedAtS: NOT_STARTED, speedRenewedAtS: NOT_STARTED,
-      meetingS: 0, beganOnLoop: false, newsSeen: 0, batteryLow: false, driftMostMps: 0,
+      meetingS: 0, beganOnLoop: false, newsSeen: 0, changedAtS: 0, mayDescend: false, batteryLow: false, driftMostMps: 0,
     },
   };
 }

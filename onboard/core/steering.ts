@@ -11,6 +11,7 @@ import { assert, unreachable } from '../../messages/assert.ts';
 import { wrapHalf, wrapRad } from './angle.ts';
 import { groundSpeedMps, headingForCourse, orderForGround } from './course.ts';
 import { distanceHomeM, type Guidance, type GuidanceInput, type GuidanceOutput } from './guidance-memory.ts';
+import { keepClear } from './keep-clear.ts';
 import { pointAt, tangentRad } from './loop.ts';
 import { placePhase, turnsPerS } from './pattern.ts';
 import { HOME_REACHED_M } from './transitions.ts';
@@ -30,11 +31,12 @@ export function steer(guidance: Guidance, input: GuidanceInput, out: GuidanceOut
       break;
     case 'joining':
       join(guidance, input);
+      keepClear(guidance, input);
       out.depthM = guidance.joiningDepthM;
       break;
     case 'holding':
       follow(guidance, input, correctionMps(guidance));
-      out.depthM = mission.depth_m;
+      out.depthM = memory.mayDescend ? mission.depth_m : guidance.joiningDepthM;
       break;
     case 'homing':
       goHome(guidance, input);

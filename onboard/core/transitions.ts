@@ -6,7 +6,7 @@ import { wrapHalf } from './angle.ts';
 import { mustTurnHome } from './energy.ts';
 import { distanceHomeM, type Guidance, type GuidanceInput } from './guidance-memory.ts';
 import { placePhase } from './pattern.ts';
-import { isHeard } from './peers.ts';
+import { isHeard, peerState } from './peers.ts';
 import { choosePlace, freePlace, isTaken, type PlaceQuestion } from './places.ts';
 import { moveOn, type Event } from './states.ts';
 
@@ -15,6 +15,10 @@ export const HOME_REACHED_M = 30;
 const DEPTH_REACHED_M = 1;
 /** A vehicle that begins this near the line's depth, and on the line, was at work there. */
 const AT_WORK_M = 3;
+/** Rounds of slots that a vehicle listens for the fleet before it goes. */
+const LISTEN_ROUNDS = 4;
+/** A vehicle that holds waits no longer than this for the others to be in their places. */
+const LAYER_WAIT_S = 1200;
 
 /** Whether the vehicle is on the line at the fleet's depth. */
 export function isAtWork(guidance: Guidance, input: GuidanceInput): boolean {
@@ -31,46 +35,50 @@ export function changeState(guidance: Guidance, input: GuidanceInput): void {
     reserve: mission.onboard.batteryReserve,
   });
   for (const order of input.orders) {
-    apply(guidance, order === 'surface' ? 'order-surface' : order === 'home' ? 'order-home' : 'order-hold');
+    apply(guidance, order === 'surface' ? 'order-surface' : order === 'home' ? 'order-home' : 'order-hold', input.atS);
   }
-  if (memory.batteryLow) apply(guidance, 'battery-low');
+  if (memory.batteryLow) apply(guidance, 'battery-low', input.atS);
   switch (memory.state) {
     case 'waiting':
       if (isReady(guidance, input)) makeReady(guidance, input);
       return;
     case 'joining':
       keepPlace(guidance, input);
-      if (isInPlace(guidance)) apply(guidance, 'in-place');
+      if (isInPlace(guidance)) apply(guidance, 'in-place', input.atS);
       return;
     case 'holding':
-      if (Math.abs(guidance.at.crossTrackM) > mission.onboard.letGo_m) apply(guidance, 'off-the-loop');
+      if (Math.abs(guidance.at.crossTrackM) > mission.onboard.letGo_m) apply(guidance, 'off-the-loop', input.atS);
       else keepPlace(guidance, input);
+      memory.mayDescend ||= isWayDownClear(guidance, input);
       return;
     case 'homing':
-      if (distanceHomeM(guidance, input) < HOME_REACHED_M) apply(guidance, 'arrived');
+      if (distanceHomeM(guidance, input) < HOME_REACHED_M) apply(guidance, 'arrived', input.atS);
       return;
     case 'surfacing':
       return;
   }
 }
 
-function apply(guidance: Guidance, event: Event): void {
+function apply(guidance: Guidance, event: Event, atS: number): void {
   const { memory } = guidance;
   const move = moveOn(memory.state, event);
   if (move === null) return;
   memory.state = move.to;
   memory.reason = move.reason;
   memory.meetingS = 0;
+  memory.changedAtS = atS;
+  memory.mayDescend = memory.beganOnLoop && event === 'in-place';
+  memory.beganOnLoop &&= event === 'ready';
 }
 
-/** Ready to join: at the own layer, and every peer was heard or two rounds of slots have gone by. */
+/** Ready to join: at the own layer, and every peer was heard or some rounds of slots have gone by. */
 function isReady(guidance: Guidance, input: GuidanceInput): boolean {
   const { mission, memory } = guidance;
   const waitedS = input.atS - memory.startedAtS;
   const roundS = mission.fleet.length * mission.modem.slot_s;
   const diveS = (2 * mission.depth_m) / mission.self.climb_mps;
   const isDeep = memory.beganOnLoop || Math.abs(input.depthM - guidance.joiningDepthM) < DEPTH_REACHED_M || waitedS > diveS;
-  return isDeep && (waitedS >= 2 * roundS + input.tickS || areAllHeard(guidance, input, 2 * roundS));
+  return isDeep && (waitedS >= LISTEN_ROUNDS * roundS + input.tickS || areAllHeard(guidance, input, LISTEN_ROUNDS * roundS));
 }
 
 function areAllHeard(guidance: Guidance, input: GuidanceInput, silenceS: number): boolean {
@@ -86,7 +94,7 @@ function makeReady(guidance: Guidance, input: GuidanceInput): void {
   const question = questionOf(guidance, input);
   const place = choosePlace(question);
   guidance.memory.place = isTaken(question, place, false) ? freePlace(question, place) : place;
-  apply(guidance, 'ready');
+  apply(guidance, 'ready', input.atS);
 }
 
 function questionOf(guidance: Guidance, input: GuidanceInput): PlaceQuestion {
@@ -112,7 +120,20 @@ function keepPlace(guidance: Guidance, input: GuidanceInput): void {
   const place = freePlace(question, memory.place);
   if (place === memory.place) return;
   memory.place = place;
-  if (isHolding) apply(guidance, 'place-taken');
+  if (isHolding) apply(guidance, 'place-taken', input.atS);
+}
+
+/** Whether the whole fleet is heard and none of it is on its way to a place; or that was waited for long enough. */
+function isWayDownClear(guidance: Guidance, input: GuidanceInput): boolean {
+  const { peers, mission, memory } = guidance;
+  if (input.atS - memory.changedAtS > LAYER_WAIT_S) return true;
+  if (!areAllHeard(guidance, input, mission.onboard.peerSilence_s)) return false;
+  for (let peer = 0; peer < peers.count; peer++) {
+    if (peer === guidance.selfIndex) continue;
+    const state = peerState(peers, peer);
+    if (state === 'waiting' || state === 'joining') return false;
+  }
+  return true;
 }
 
 function isInPlace(guidance: Guidance): boolean {
