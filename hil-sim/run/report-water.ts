@@ -9,6 +9,7 @@ import type { ReportInput } from './report.ts';
 
 const INK = 'var(--ink)';
 const LOOP = { stroke: 'var(--ink)', strokeWidth: 5, strokeOpacity: 0.16 } as const;
+const LINE = { x: 'e', y: 'n', clip: true } as const;
 const POINT_STEP = 4;
 
 interface Point {
@@ -109,63 +110,55 @@ function tracksFigure({ trial, report }: ReportInput): string {
   const loop = loopPoints(report);
   const { keepIn, keepOut, recovery } = trial.mission;
   const bounds = boundsOf([...tracks.flat(), ...loop], 0.12);
-  const line = { x: 'e', y: 'n', clip: true as const };
-  const marks = vehicles.flatMap((vehicle, index) => {
-    const mark = markOf(index);
-    const dot = { x: 'e', y: 'n', symbol: mark.symbol as never, r: 6, stroke: mark.colour, strokeWidth: 1.5 };
-    const fill = mark.isHollow ? 'var(--paper)' : mark.colour;
-    const last = tracks[index]!.at(-1);
-    const isRight = last !== undefined && last.e > bounds.e[0] + 0.8 * (bounds.e[1] - bounds.e[0]);
-    return [
-      Plot.line(tracks[index]!, { ...line, stroke: mark.colour, strokeWidth: 0.8, strokeOpacity: 0.9 }),
-      Plot.dot(tracks[index]!.slice(0, 1), { ...dot, r: 4, fill: 'var(--paper)' }),
-      Plot.dot(tracks[index]!.slice(-1), { ...dot, fill }),
-      Plot.text(tracks[index]!.slice(-1), {
-        x: 'e',
-        y: 'n',
-        text: () => vehicle.name,
-        dx: isRight ? -10 : 10,
-        textAnchor: isRight ? 'end' : 'start',
-        fill: INK,
-        stroke: 'var(--paper)',
-        strokeWidth: 4,
-      }),
-    ];
-  });
+  const area = (of: (typeof keepOut)[number]): Point[] => circle(of.centre, of.radius);
   const svg = drawing(`Tracks of ${vehicles.length} vehicles about the loop, north up`, {
     ...axes(bounds, 460),
     marks: [
-      Plot.line(circle(keepIn.centre, keepIn.radius), {
-        ...line,
-        stroke: INK,
-        strokeWidth: 1,
-        strokeDasharray: '1 4',
-      }),
-      ...keepOut.map((area) =>
-        Plot.line(circle(area.centre, area.radius), { ...line, stroke: 'var(--lack)', strokeWidth: 2 }),
-      ),
-      Plot.line(loop, { ...line, ...LOOP }),
-      ...marks,
+      Plot.line(area(keepIn), { ...LINE, stroke: INK, strokeWidth: 1, strokeDasharray: '1 4' }),
+      ...keepOut.map((shape) => Plot.line(area(shape), { ...LINE, stroke: 'var(--lack)', strokeWidth: 2 })),
+      Plot.line(loop, { ...LINE, ...LOOP }),
+      ...vehicles.flatMap(({ name }, index) => vehicleMarks(tracks[index]!, { name, index, bounds })),
       Plot.text([{ e: recovery.east, n: recovery.north }], {
-        x: 'e',
-        y: 'n',
+        ...LINE,
         text: () => '✕ recovery',
         textAnchor: 'start',
         dx: -4,
         fill: INK,
-        clip: true,
       }),
     ],
   });
   const place = (at: { east: number; north: number }): string =>
     `east ${plainTick(Math.round(at.east))} m, north ${plainTick(Math.round(at.north))} m`;
-  const keepInText = `keep-in is a circle of ${Math.round(keepIn.radius)} m about ${place(keepIn.centre)}`;
   return figureOf(
     'Tracks, true positions, north up',
     svg,
     `The loop is ${Math.round(report.track.lengthM)} m long, travelled ${trial.mission.loop.turn}; ` +
-      `${keepInText}; recovery is at ${place(recovery)}.`,
+      `keep-in is a circle of ${Math.round(keepIn.radius)} m about ${place(keepIn.centre)}; ` +
+      `recovery is at ${place(recovery)}.`,
   );
+}
+
+/** A vehicle's track, where it began, and where it ended with its name on the side that has room. */
+function vehicleMarks(track: Point[], of: { name: string; index: number; bounds: Bounds }): Plot.Markish[] {
+  const mark = markOf(of.index);
+  const dot = { x: 'e', y: 'n', symbol: mark.symbol as never, stroke: mark.colour, strokeWidth: 1.5 };
+  const [west, east] = of.bounds.e;
+  const isRight = (track.at(-1)?.e ?? west) > west + 0.8 * (east - west);
+  return [
+    Plot.line(track, { ...LINE, stroke: mark.colour, strokeWidth: 0.8, strokeOpacity: 0.9 }),
+    Plot.dot(track.slice(0, 1), { ...dot, r: 4, fill: 'var(--paper)' }),
+    Plot.dot(track.slice(-1), { ...dot, r: 6, fill: mark.isHollow ? 'var(--paper)' : mark.colour }),
+    Plot.text(track.slice(-1), {
+      x: 'e',
+      y: 'n',
+      text: () => of.name,
+      dx: isRight ? -10 : 10,
+      textAnchor: isRight ? 'end' : 'start',
+      fill: INK,
+      stroke: 'var(--paper)',
+      strokeWidth: 4,
+    }),
+  ];
 }
 
 /** What the drawings' lines and marks mean. */

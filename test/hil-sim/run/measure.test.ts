@@ -137,6 +137,15 @@ describe('cross-track and forming up', () => {
     expect(worst.formUp_s.at_s).toBe(299);
   });
 
+  it('forgets a span in which the fleet was formed up for less than the hold', () => {
+    // 40 m off until 99 s, 100 m off until 199 s, 5 m off from then on.
+    const { values } = run(trialOf(5), 900, (timeS) =>
+      evenRing(timeS < 100 ? 640 : timeS < 200 ? 700 : 605)(timeS),
+    );
+    expect(values.formUp_s).toBe(200);
+    expect(values.crossTrackMax).toBeCloseTo(5, 3);
+  });
+
   it('starts again when one vehicle leaves for one tick before the hold is over', () => {
     const { values, worst } = run(trialOf(5), 1300, (timeS) =>
       evenRing(600)(timeS).map((moment, index) => (index === 3 && timeS === 500 ? onRing(680, 0.6) : moment)),
@@ -162,7 +171,9 @@ describe('cross-track and forming up', () => {
     ['needs the whole hold', 600, null],
     ['is formed up when it is exactly over', 601, 0],
   ])('%s', (_title, ticks, formUp) => {
-    expect(run(trialOf(5), ticks, evenRing(600)).values.formUp_s).toBe(formUp);
+    const { values } = run(trialOf(5), ticks, evenRing(605));
+    expect(values.formUp_s).toBe(formUp);
+    expect(values.crossTrackMax === null).toBe(formUp === null);
   });
 
   it('says null for all that counts from forming up if that never comes, and who was last out', () => {
@@ -222,10 +233,18 @@ describe('gaps', () => {
 
   it('of a pattern have their own targets in cyclic order, whoever stands where', () => {
     const trial = trialOf(3, { mission: missionOf({ spacing: [0, 0.2, 0.5] }) });
+    const formedUp = { crossTrack: '75 m', gap: '100 %', hold: '10 s' };
+    const looseTrial = trialOf(3, { mission: missionOf({ spacing: [0, 0.2, 0.5], formedUp }) });
     // The pattern's gaps are 0.2, 0.3, 0.5; amber has 0.5 ahead here, cobalt 0.3, jade 0.2.
     const { values } = run(trial, 900, () => [onRing(600, 0.6), onRing(600, 0.3), onRing(600, 0.1)]);
     expect(values.formUp_s).toBe(0);
     expect(values.gapRms).toBeCloseTo(0, 6);
+    // The same half a loop on: from phase 0 the gaps now come as 0.5, 0.2, 0.3.
+    const on = run(trial, 900, () => [onRing(600, 0.1), onRing(600, 0.8), onRing(600, 0.6)]);
+    expect(on.values.gapRms).toBeCloseTo(0, 6);
+    // In the other cyclic order, 0.3, 0.2, 0.5, no turn fits: laid on 0.2, 0.3, 0.5 it is off by 1/2, −1/3, 0.
+    const other = run(looseTrial, 12, () => [onRing(600, 0), onRing(600, 0.3), onRing(600, 0.5)]);
+    expect(other.values.gapRms).toBeCloseTo(0.346944333, 5); // √((1/4 + 1/9)/3)
   });
 
   it('of one vehicle alone are the whole loop', () => {
@@ -263,6 +282,21 @@ describe('separation', () => {
     expect(values.separationMin).toBeCloseTo(13, 9); // √(12² + 5²)
     expect(worst.separationMin).toEqual({ vehicle: 'amber', at_s: 50, with: 'jade' });
   });
+
+  it.each([
+    ['above', 35.1, 7],
+    ['above, but farther than 5 m', 34.9, null],
+    ['below', 44.9, 7],
+    ['below, but farther than 5 m', 45.1, null],
+  ])('counts a vehicle %s', (_where, depthM, apartM) => {
+    const { values } = run(trialOf(2), 10, () => [
+      { eastM: 0, northM: 0, depthM: 40 },
+      { eastM: 3, northM: 4, depthM },
+    ]);
+    // √(25 + 4.9²) = 7.0007
+    if (apartM === null) expect(values.separationMin).toBeNull();
+    else expect(values.separationMin).toBeCloseTo(apartM, 2);
+  });
 });
 
 describe('beliefs', () => {
@@ -289,13 +323,13 @@ describe('beliefs', () => {
       (timeS) =>
         [0, 1].map((index) => ({
           ...onRing(600, index / 2),
-          map: timeS % 60 === 0 ? flatMap(index === 0 ? 0.13 : 0.07, 0.3) : null,
+          map: timeS % 60 === 0 ? flatMap(index === 0 ? 0.13 : 0.14, index === 0 ? 0.34 : 0.33) : null,
         })),
-      { water: flowing(0.1, 0.26) },
+      { water: flowing(0.1, 0.3) },
     );
-    // Amber off by (0.03, 0.04), cobalt by (−0.03, 0.04): 0.05 each. The mean is (0.10, 0.30): 0.03 each.
+    // Amber off by (0.03, 0.04), cobalt by (0.04, 0.03): 0.05 each. Either is (0.005, 0.005) from their mean.
     expect(values.mapRms).toBeCloseTo(0.05, 9);
-    expect(values.mapSpread).toBeCloseTo(0.03, 9);
+    expect(values.mapSpread).toBeCloseTo(0.00707106781, 9); // 0.005·√2
     expect(worst.mapRms.vehicle).toBe('amber');
     expect(maps.errorMps[3]).toBeCloseTo(0.05, 9);
   });
