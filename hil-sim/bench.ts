@@ -138,9 +138,8 @@ async function withProcesses(
   const bus = await startBroker();
   try {
     const agents = await processAgents({
-      bus, bench: job.bench, missions, onLine: (vehicle, line) => complain([`${vehicle}: ${line}`]),
+      bus, bench: job.bench, missions, signal, onLine: (vehicle, line) => complain([`${vehicle}: ${line}`]),
     });
-    signal.addEventListener('abort', () => { agents.fail('stopped by a signal', null); });
     try {
       return await run(agents);
     } finally {

@@ -1,6 +1,8 @@
 /**
- * One agent as a process: `--vehicle NAME --bench NAME --broker URL [--qos 0|1]`. Exit status: 0 the
- * sea ended the run, 2 bad usage, 3 the agent failed.
+ * One agent as a process: `--vehicle NAME --bench NAME --broker URL [--qos 0|1] [--tied]`. Exit status:
+ * 0 the sea ended the run, 2 bad usage, 3 the agent failed. A tied agent belongs to the process that
+ * started it: it ends when its standard input does, however that process died, and leaves an interrupt
+ * from the keyboard to it.
  */
 import { parseArgs } from 'node:util';
 import { isBenchName } from '../messages/topics.ts';
@@ -9,35 +11,53 @@ import { runShell, type ShellOptions } from './shell.ts';
 const EXIT = { ended: 0, usage: 2, failed: 3 } as const;
 
 function usage(message: string): never {
-  process.stderr.write(`agent: ${message}\nusage: --vehicle NAME --bench NAME --broker URL [--qos 0|1]\n`);
+  process.stderr.write(`agent: ${message}\nusage: --vehicle NAME --bench NAME --broker URL [--qos 0|1] [--tied]\n`);
   process.exit(EXIT.usage);
 }
 
-function readArguments(): ShellOptions {
-  let values: { vehicle?: string; bench?: string; broker?: string; qos?: string };
+interface Arguments extends Omit<ShellOptions, 'onNote'> {
+  readonly tied: boolean;
+}
+
+function readArguments(): Arguments {
+  let values: { vehicle?: string; bench?: string; broker?: string; qos?: string; tied?: boolean };
   try {
     ({ values } = parseArgs({
-      options: { vehicle: { type: 'string' }, bench: { type: 'string' }, broker: { type: 'string' }, qos: { type: 'string' } },
+      options: {
+        vehicle: { type: 'string' }, bench: { type: 'string' }, broker: { type: 'string' }, qos: { type: 'string' },
+        tied: { type: 'boolean' },
+      },
     }));
   } catch (error) {
     return usage(error instanceof Error ? error.message : String(error));
   }
-  const { vehicle, bench, broker, qos = '0' } = values;
+  const { vehicle, bench, broker, qos = '0', tied = false } = values;
   if (vehicle === undefined || !/^[a-z][a-z0-9-]{0,23}$/.test(vehicle)) return usage('--vehicle must be a vehicle\'s name');
   if (bench === undefined || !isBenchName(bench)) return usage('--bench must be a bench\'s name');
-  if (broker === undefined || !/^(mqtt|tcp|ws):\/\/./.test(broker)) return usage('--broker must be a URL like mqtt://127.0.0.1:1883');
+  if (broker === undefined || !isBrokerUrl(broker)) return usage('--broker must be a URL like mqtt://127.0.0.1:1883');
   if (qos !== '0' && qos !== '1') return usage('--qos must be 0 or 1');
-  return { vehicle, bench, broker, qos: qos === '0' ? 0 : 1 };
+  return { vehicle, bench, broker, qos: qos === '0' ? 0 : 1, tied };
+}
+
+function isBrokerUrl(text: string): boolean {
+  return /^(mqtt|mqtts|tcp|ws|wss):\/\/./.test(text) && URL.canParse(text);
 }
 
 const options = readArguments();
+const say = (line: string): void => { process.stderr.write(`${line}\n`); };
 const stop = new AbortController();
-for (const signal of ['SIGINT', 'SIGTERM'] as const) process.once(signal, () => { stop.abort(); });
+if (options.tied) {
+  process.stdin.resume().once('end', () => { stop.abort(); }).once('error', () => { stop.abort(); });
+  process.on('SIGINT', () => undefined);
+} else {
+  process.once('SIGINT', () => { stop.abort(); });
+}
+process.once('SIGTERM', () => { stop.abort(); });
 process.on('uncaughtException', (error) => {
-  process.stderr.write(`agent ${options.vehicle} failed: ${error.stack ?? error.message}\n`);
+  say(`agent ${options.vehicle} failed: ${error.stack ?? error.message}`);
   process.exit(EXIT.failed);
 });
 
-const end = await runShell(options, stop.signal);
-if (!end.ok) process.stderr.write(`agent ${options.vehicle}: ${end.reason}\n`);
+const end = await runShell({ ...options, onNote: (line) => { say(`agent ${options.vehicle}: ${line}`); } }, stop.signal);
+if (!end.ok) say(`agent ${options.vehicle}: ${end.reason}`);
 process.exit(end.ok ? EXIT.ended : EXIT.failed);

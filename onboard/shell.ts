@@ -1,52 +1,70 @@
 /**
- * The onboard shell: MQTT on one side, the core on the other, one pipeline between them. A message that
- * is garbled, foreign or out of order is refused and counted, and never reaches the core. Asked again
- * for a tick that it has answered, the agent gives the same steer.
+ * The onboard shell: MQTT on one side, the core on the other, one pipeline between them. What becomes of
+ * each message is decided in answering.ts; here are the connection, the last will, the low-rate status
+ * and the ways out.
  */
 import { connect, type MqttClient } from 'mqtt';
-import { Subject, filter, fromEvent, map, takeUntil, type Observable } from 'rxjs';
-import { readMessage, writeMessage } from '../messages/codec.ts';
-import { missionSchema, type Mission } from '../messages/mission.ts';
-import { normalise } from '../messages/normalise.ts';
-import { seaTickSchema } from '../messages/sea.ts';
-import { senseSchema, type Sense } from '../messages/sense.ts';
+import { Subject, filter, fromEvent, map, takeUntil, throttleTime } from 'rxjs';
+import { writeMessage } from '../messages/codec.ts';
 import type { Status } from '../messages/status.ts';
 import { seaTopic, vehicleTopic } from '../messages/topics.ts';
-import { start, type State } from './core/state.ts';
-import { step } from './core/step.ts';
+import {
+  isRunOver, startAnswering, statusOf, takeMission, takeSense, type Answering,
+} from './answering.ts';
 
 const RECONNECT_MS = 500;
 const KEEP_ALIVE_S = 30;
-/** Senses between two statuses while nothing changes. */
-const STATUS_TICKS = 300;
+/** Shortest wall time between two statuses. */
+const STATUS_MS = 1000;
+/** An agent that has a mission and no broker for so long ends; one without a mission waits on. */
+const LOST_MS = 30_000;
+/** Time for the last words to leave. */
+const FAREWELL_MS = 1000;
 
 export interface ShellOptions {
   readonly vehicle: string;
   readonly bench: string;
   readonly broker: string;
   readonly qos: 0 | 1;
+  /** Where a person is told what the agent waits for. */
+  readonly onNote: (line: string) => void;
 }
 
 /** How a shell ended: the sea said that the run is over, or what went wrong. */
 export type ShellEnd = { readonly ok: true } | { readonly ok: false; readonly reason: string };
 
-interface Running {
-  mission: Mission | null;
-  state: State | null;
-  lastTick: number;
-  lastSteer: Uint8Array;
-  refused: number;
-  agentState: Status['state'];
+interface Shell {
+  readonly options: ShellOptions;
+  readonly topics: Readonly<Record<'mission' | 'sense' | 'steer' | 'status' | 'tick', string>>;
+  readonly answering: Answering;
+  readonly client: MqttClient;
+  readonly changed: Subject<void>;
+  readonly ended: Subject<ShellEnd>;
 }
 
-interface Arrived {
-  readonly topic: string;
-  readonly bytes: Uint8Array;
-}
-
-/** Runs one agent until the sea ends the run, the broker refuses it, or `stop` fires. */
+/** Runs one agent until the sea ends the run, the broker is lost or refuses it, or `stop` fires. */
 export function runShell(options: ShellOptions, stop: AbortSignal): Promise<ShellEnd> {
-  const { vehicle, bench, qos } = options;
+  const shell = connectShell(options);
+  const { client, ended, answering } = shell;
+  const over = new Promise<ShellEnd>((resolve) => {
+    ended.subscribe((end) => {
+      sayStatus(shell, end.ok ? statusOf(answering, 'ended') : statusOf(answering, 'failed', end.reason));
+      const leave = (): void => { client.end(true, () => { resolve(end); }); };
+      const timer = setTimeout(leave, FAREWELL_MS);
+      if (client.connected) client.end(false, () => { clearTimeout(timer); resolve(end); });
+    });
+  });
+  joinPipeline(shell);
+  keepConnected(shell);
+  const onStop = (): void => { ended.next({ ok: false, reason: 'stopped by a signal' }); };
+  if (stop.aborted) onStop();
+  else stop.addEventListener('abort', onStop, { once: true });
+  return over;
+}
+
+function connectShell(options: ShellOptions): Shell {
+  const { vehicle, bench } = options;
+  const answering = startAnswering(vehicle);
   const topics = {
     mission: vehicleTopic(bench, vehicle, 'mission'),
     sense: vehicleTopic(bench, vehicle, 'sense'),
@@ -54,88 +72,81 @@ export function runShell(options: ShellOptions, stop: AbortSignal): Promise<Shel
     status: vehicleTopic(bench, vehicle, 'status'),
     tick: seaTopic(bench, 'tick'),
   };
-  const running: Running = {
-    mission: null, state: null, lastTick: -1, lastSteer: new Uint8Array(0), refused: 0, agentState: null,
-  };
-  const statusOf = (phase: Status['phase'], reason: string | null = null): Status => ({
-    vehicle, phase, tick: running.lastTick, state: running.agentState, refused: running.refused, reason,
-  });
+  const will = Buffer.from(writeMessage(statusOf(answering, 'gone')));
   const client = connect(options.broker, {
     protocolVersion: 4,
     clientId: `drywake-${bench}-${vehicle}`,
     clean: true,
+    resubscribe: false,
     keepalive: KEEP_ALIVE_S,
     reconnectPeriod: RECONNECT_MS,
-    will: { topic: topics.status, payload: Buffer.from(writeMessage(statusOf('gone'))), qos: 1, retain: true },
+    will: { topic: topics.status, payload: will, qos: 1, retain: true },
   });
-  const sayStatus = (phase: Status['phase'], reason: string | null = null): void => {
-    client.publish(topics.status, Buffer.from(writeMessage(statusOf(phase, reason))), { qos: 1, retain: true });
-  };
-  const ended = new Subject<ShellEnd>();
-  client.on('connect', () => {
-    noDelay(client);
-    client.subscribe([topics.mission, topics.sense, topics.tick], { qos });
-  });
-
-  const arrived: Observable<Arrived> = fromEvent(client as never, 'message', (topic: string, payload: Uint8Array) => ({
-    topic, bytes: payload,
-  })).pipe(takeUntil(ended));
-
-  arrived.pipe(filter(({ topic }) => topic === topics.mission)).subscribe(({ bytes }) => {
-    if (bytes.length === 0) return;
-    const reading = readMessage(missionSchema, bytes);
-    if (!reading.ok || reading.value.vehicle !== vehicle) {
-      running.refused += 1;
-      return;
-    }
-    if (running.mission !== null) return;
-    running.mission = reading.value;
-    running.state = start(reading.value);
-    sayStatus('ready');
-  });
-
-  arrived.pipe(
-    filter(({ topic }) => topic === topics.sense),
-    map(({ bytes }) => answer(running, bytes)),
-    filter((steer) => steer !== null),
-  ).subscribe((steer) => {
-    client.publish(topics.steer, steer as Buffer, { qos });
-    if (running.lastTick % STATUS_TICKS === 0) sayStatus('running');
-  });
-
-  arrived.pipe(filter(({ topic }) => topic === topics.tick)).subscribe(({ bytes }) => {
-    const reading = readMessage(seaTickSchema, bytes);
-    if (reading.ok && reading.value.phase !== 'running') ended.next({ ok: true });
-  });
-
-  stop.addEventListener('abort', () => { ended.next({ ok: false, reason: 'stopped by a signal' }); });
-  client.on('error', (error) => {
-    if ('code' in error && typeof error.code === 'number') ended.next({ ok: false, reason: `the broker refused: ${error.message}` });
-  });
-  return new Promise((resolve) => {
-    ended.subscribe((end) => {
-      sayStatus(end.ok ? 'ended' : 'failed', end.ok ? null : end.reason);
-      client.end(false, () => { resolve(end); });
-    });
-  });
+  return { options, topics, answering, client, changed: new Subject(), ended: new Subject() };
 }
 
-/** The steer for a sense's bytes, or null if they are refused. */
-function answer(running: Running, bytes: Uint8Array): Buffer | null {
-  const refuse = (): null => {
-    running.refused += 1;
-    return null;
+/** Sense in, codec, step, codec, steer out; beside it mission, status and the end of the run. */
+function joinPipeline(shell: Shell): void {
+  const { client, topics, answering, ended, changed, options: { qos } } = shell;
+  const fail = (error: unknown): void => {
+    ended.next({ ok: false, reason: error instanceof Error ? error.stack ?? error.message : String(error) });
   };
-  const reading = readMessage(senseSchema, bytes);
-  if (!reading.ok || running.state === null) return refuse();
-  const sense: Sense = reading.value;
-  if (sense.tick === running.lastTick) return Buffer.from(running.lastSteer);
-  if (sense.tick < running.lastTick) return refuse();
-  const steer = normalise(step(running.state, sense));
-  running.lastTick = sense.tick;
-  running.lastSteer = writeMessage(steer);
-  running.agentState = steer.state;
-  return Buffer.from(running.lastSteer);
+  const arrived = fromEvent(client as never, 'message', (topic: string, bytes: Uint8Array) => ({ topic, bytes }));
+  const on = (wanted: string) => arrived.pipe(
+    takeUntil(ended), filter(({ topic }) => topic === wanted), map(({ bytes }) => bytes),
+  );
+
+  on(topics.sense).pipe(
+    map((bytes) => takeSense(answering, bytes)),
+  ).subscribe({
+    next: (steer) => {
+      if (steer !== null) client.publish(topics.steer, steer as Buffer, { qos });
+      changed.next();
+    },
+    error: fail,
+  });
+  on(topics.mission).pipe(map((bytes) => takeMission(answering, bytes))).subscribe({
+    next: (isNew) => (isNew ? sayStatus(shell, statusOf(answering)) : changed.next()),
+    error: fail,
+  });
+  on(topics.tick).pipe(filter((bytes) => isRunOver(answering, bytes))).subscribe(() => { ended.next({ ok: true }); });
+  changed.pipe(
+    takeUntil(ended), filter(() => answering.mission !== null),
+    throttleTime(STATUS_MS, undefined, { leading: true, trailing: true }),
+  ).subscribe(() => { sayStatus(shell, statusOf(answering)); });
+}
+
+function sayStatus({ client, topics }: Shell, status: Status): void {
+  client.publish(topics.status, Buffer.from(writeMessage(status)), { qos: 1, retain: true });
+}
+
+function keepConnected({ client, topics, answering, changed, ended, options }: Shell): void {
+  let lost: NodeJS.Timeout | undefined;
+  let told = false;
+  client.on('connect', () => {
+    clearTimeout(lost);
+    lost = undefined;
+    noDelay(client);
+    client.subscribe([topics.mission, topics.sense, topics.tick], { qos: options.qos });
+    changed.next();
+  });
+  client.on('close', () => {
+    if (answering.mission === null) {
+      if (!told) options.onNote(`waiting for a broker at ${options.broker}`);
+      told = true;
+      return;
+    }
+    lost ??= setTimeout(() => {
+      ended.next({ ok: false, reason: `the broker has been gone for ${LOST_MS / 1000} s` });
+    }, LOST_MS);
+  });
+  client.on('error', (error) => {
+    // A number is the broker's own answer to the connection; texts are the network's, and pass.
+    if ('code' in error && typeof error.code === 'number') {
+      ended.next({ ok: false, reason: `the broker refused: ${error.message}` });
+    }
+  });
+  ended.subscribe(() => { clearTimeout(lost); });
 }
 
 /** Nagle's algorithm off: it would hold every steer back for a delayed acknowledgement. */

@@ -1,9 +1,10 @@
 /**
  * Lockstep: the sea waits for every steer of a tick. A missing one is asked for again after a second of
- * wall time and given up after ten; a steer that is garbled, foreign, late or a second time is refused
- * and counted, and never reaches the sea.
+ * wall time and given up after ten; a steer that is garbled, foreign, of another tick or a second time
+ * is refused and counted, and never reaches the sea.
  */
 import { readMessage, writeMessage } from '../../messages/codec.ts';
+import { normalise } from '../../messages/normalise.ts';
 import type { Sense } from '../../messages/sense.ts';
 import { steerSchema, type Steer } from '../../messages/steer.ts';
 import { everyVehicle, readTopic, vehicleTopic } from '../../messages/topics.ts';
@@ -13,13 +14,29 @@ import type { Bus } from './bus.ts';
 const ASK_AGAIN_MS = 1000;
 const GIVE_UP_MS = 10_000;
 
+/** Why a steer is refused. */
+export const STEER_REFUSALS = ['foreign', 'garbled', 'another tick', 'repeated', 'fates do not fit'] as const;
+export type SteerRefusal = (typeof STEER_REFUSALS)[number];
+
 export interface LockstepAgents extends Agents {
-  /** Ends the run: the tick that is being waited for fails with this reason. */
+  /** Ends the run: the tick that is being waited for, or else the next one, fails with this reason. */
   fail(reason: string, vehicle: string | null): void;
   /** Steers refused so far, by reason. */
-  readonly refused: ReadonlyMap<string, number>;
+  readonly refused: Readonly<Record<SteerRefusal, number>>;
+  /** The last tick whose steers were all there; -1 before the first. */
+  lastTick(): number;
 }
 
+export interface LockstepOptions {
+  readonly bus: Bus;
+  readonly bench: string;
+  /** Names in fleet order. */
+  readonly vehicles: readonly string[];
+  readonly askAgainMs?: number;
+  readonly giveUpMs?: number;
+}
+
+/** One tick that is not yet answered. */
 interface Waiting {
   readonly tick: number;
   readonly senses: readonly Sense[];
@@ -31,74 +48,102 @@ interface Waiting {
   readonly reject: (failure: RunFailure) => void;
 }
 
+interface Lockstep {
+  readonly options: LockstepOptions;
+  readonly senseTopics: readonly string[];
+  readonly refused: Record<SteerRefusal, number>;
+  waiting: Waiting | null;
+  failed: { readonly reason: string; readonly vehicle: string | null } | null;
+  lastTick: number;
+}
+
 /** Agents behind a bus, in fleet order. */
-export async function lockstepAgents(bus: Bus, bench: string, vehicles: readonly string[]): Promise<LockstepAgents> {
-  const senseTopics = vehicles.map((vehicle) => vehicleTopic(bench, vehicle, 'sense'));
-  const refused = new Map<string, number>();
-  let waiting: Waiting | null = null;
-  let failure: RunFailure | null = null;
-
-  const refuse = (reason: string): void => {
-    refused.set(reason, (refused.get(reason) ?? 0) + 1);
+export async function lockstepAgents(options: LockstepOptions): Promise<LockstepAgents> {
+  const { bus, bench, vehicles, askAgainMs = ASK_AGAIN_MS } = options;
+  const lockstep: Lockstep = {
+    options,
+    senseTopics: vehicles.map((vehicle) => vehicleTopic(bench, vehicle, 'sense')),
+    refused: { foreign: 0, garbled: 0, 'another tick': 0, repeated: 0, 'fates do not fit': 0 },
+    waiting: null,
+    failed: null,
+    lastTick: -1,
   };
-
-  const take = (topic: string, bytes: Uint8Array): void => {
-    const reading = readTopic(topic);
-    const index = reading?.of === 'vehicle' ? vehicles.indexOf(reading.vehicle) : -1;
-    if (index < 0) return refuse('foreign');
-    const message = readMessage(steerSchema, bytes);
-    if (!message.ok) return refuse('garbled');
-    const steer = message.value;
-    if (waiting === null || steer.tick !== waiting.tick) return refuse('another tick');
-    if (waiting.steers[index] !== null) return refuse('repeated');
-    if (steer.heard.length !== waiting.senses[index]!.heard.length) return refuse('garbled');
-    waiting.steers[index] = steer;
-    waiting.missing -= 1;
-    if (waiting.missing > 0) return;
-    const { steers, resolve } = waiting;
-    waiting = null;
-    resolve(steers as Steer[]);
-  };
-  await bus.subscribe(everyVehicle(bench, 'steer'), take);
-
-  const watch = setInterval(() => {
-    if (waiting === null) return;
-    const nowMs = performance.now();
-    const index = waiting.steers.indexOf(null);
-    if (nowMs - waiting.startedMs >= GIVE_UP_MS) {
-      const { reject, tick } = waiting;
-      waiting = null;
-      reject(new RunFailure(`no steer from ${vehicles[index]!} for ${GIVE_UP_MS / 1000} s`, tick, vehicles[index]!));
-    } else if (nowMs - waiting.askedMs >= ASK_AGAIN_MS) {
-      waiting.askedMs = nowMs;
-      for (let at = 0; at < vehicles.length; at++) {
-        if (waiting.steers[at] === null) bus.publish(senseTopics[at]!, writeMessage(waiting.senses[at]));
-      }
-    }
-  }, ASK_AGAIN_MS / 4);
-
+  await bus.subscribe(everyVehicle(bench, 'steer'), (topic, bytes) => {
+    const refusal = take(lockstep, topic, bytes);
+    if (refusal !== null) lockstep.refused[refusal] += 1;
+  });
+  const watch = setInterval(() => { lookAtTheClock(lockstep); }, askAgainMs / 4);
   return {
-    refused,
-    answer(senses) {
-      if (failure !== null) return Promise.reject(failure);
-      return new Promise((resolve, reject) => {
-        const nowMs = performance.now();
-        waiting = {
-          tick: senses[0]!.tick, senses, steers: new Array<Steer | null>(senses.length).fill(null),
-          missing: senses.length, startedMs: nowMs, askedMs: nowMs, resolve, reject,
-        };
-        for (let index = 0; index < senses.length; index++) {
-          bus.publish(senseTopics[index]!, writeMessage(senses[index]));
-        }
-      });
-    },
+    refused: lockstep.refused,
+    lastTick: () => lockstep.lastTick,
+    answer: (senses) => ask(lockstep, senses),
     fail(reason, vehicle) {
-      failure ??= new RunFailure(reason, waiting?.tick ?? 0, vehicle);
-      waiting?.reject(failure);
-      waiting = null;
+      lockstep.failed ??= { reason, vehicle };
+      if (lockstep.waiting !== null) giveUp(lockstep, lockstep.waiting);
     },
-    close() {
-      clearInterval(watch);
-    },
+    close() { clearInterval(watch); },
   };
+}
+
+function ask(lockstep: Lockstep, senses: readonly Sense[]): Promise<readonly Steer[]> {
+  const { options: { bus }, senseTopics, failed } = lockstep;
+  const { tick } = senses[0]!;
+  if (failed !== null) return Promise.reject(new RunFailure(failed.reason, tick, failed.vehicle));
+  return new Promise((resolve, reject) => {
+    const nowMs = performance.now();
+    lockstep.waiting = {
+      tick, senses, steers: new Array<Steer | null>(senses.length).fill(null), missing: senses.length,
+      startedMs: nowMs, askedMs: nowMs, resolve, reject,
+    };
+    for (let index = 0; index < senses.length; index++) {
+      bus.publish(senseTopics[index]!, writeMessage(normalise(senses[index])));
+    }
+  });
+}
+
+/** Takes what came on a steer topic, or answers why it is refused. */
+function take(lockstep: Lockstep, topic: string, bytes: Uint8Array): SteerRefusal | null {
+  const { waiting, options: { vehicles } } = lockstep;
+  const reading = readTopic(topic);
+  const index = reading?.of === 'vehicle' ? vehicles.indexOf(reading.vehicle) : -1;
+  if (index < 0) return 'foreign';
+  const message = readMessage(steerSchema, bytes);
+  if (!message.ok) return 'garbled';
+  const steer = message.value;
+  if (waiting === null) return steer.tick === lockstep.lastTick ? 'repeated' : 'another tick';
+  if (steer.tick !== waiting.tick) return 'another tick';
+  if (waiting.steers[index] !== null) return 'repeated';
+  if (steer.heard.length !== waiting.senses[index]!.heard.length) return 'fates do not fit';
+  waiting.steers[index] = steer;
+  waiting.missing -= 1;
+  if (waiting.missing > 0) return null;
+  lockstep.waiting = null;
+  lockstep.lastTick = waiting.tick;
+  waiting.resolve(waiting.steers as Steer[]);
+  return null;
+}
+
+/** Asks again for what is missing too long, and gives up in the end. */
+function lookAtTheClock(lockstep: Lockstep): void {
+  const { waiting, senseTopics, options } = lockstep;
+  const { vehicles, bus, askAgainMs = ASK_AGAIN_MS, giveUpMs = GIVE_UP_MS } = options;
+  if (waiting === null) return;
+  const nowMs = performance.now();
+  if (nowMs - waiting.startedMs >= giveUpMs) {
+    const late = vehicles.filter((_vehicle, index) => waiting.steers[index] === null);
+    const others = late.length > 1 ? ` (nor from ${late.slice(1).join(', ')})` : '';
+    lockstep.failed ??= { reason: `no steer from ${late[0]!}${others} for ${giveUpMs / 1000} s`, vehicle: late[0]! };
+    giveUp(lockstep, waiting);
+  } else if (nowMs - waiting.askedMs >= askAgainMs) {
+    waiting.askedMs = nowMs;
+    for (let index = 0; index < vehicles.length; index++) {
+      if (waiting.steers[index] === null) bus.publish(senseTopics[index]!, writeMessage(waiting.senses[index]));
+    }
+  }
+}
+
+function giveUp(lockstep: Lockstep, waiting: Waiting): void {
+  const { reason, vehicle } = lockstep.failed!;
+  lockstep.waiting = null;
+  waiting.reject(new RunFailure(reason, waiting.tick, vehicle));
 }
