@@ -241,6 +241,7 @@ describe('gaps', () => {
     expect(values.gapRms).toBeCloseTo(0, 6);
     // The same half a loop on: from phase 0 the gaps now come as 0.5, 0.2, 0.3.
     const on = run(trial, 900, () => [onRing(600, 0.1), onRing(600, 0.8), onRing(600, 0.6)]);
+    expect(on.values.formUp_s).toBe(0);
     expect(on.values.gapRms).toBeCloseTo(0, 6);
     // In the other cyclic order, 0.3, 0.2, 0.5, no turn fits: laid on 0.2, 0.3, 0.5 it is off by 1/2, −1/3, 0.
     const other = run(looseTrial, 12, () => [onRing(600, 0), onRing(600, 0.3), onRing(600, 0.5)]);
