@@ -1,6 +1,7 @@
 /** The public face of the contract, for shells and for types. */
 export * from './codec.ts';
 export * from './frame.ts';
+export * from './memory.ts';
 export * from './mission.ts';
 export * from './normalise.ts';
 export * from './pack.ts';

@@ -1,6 +1,6 @@
 /**
  * The digest of a run: SHA-256, lower-case hex, over tick by tick, vehicle in fleet order, sense then
- * steer, each in its packed form. A promise for one Node version, since sin, cos and their kin may
+ * steer, each in its packed form; a vehicle whose agent is down adds nothing. A promise for one Node version, since sin, cos and their kin may
  * differ in the last bit between versions.
  */
 import { createHash } from 'node:crypto';
@@ -9,7 +9,7 @@ import type { Sense } from '../../messages/sense.ts';
 import type { Steer } from '../../messages/steer.ts';
 
 export interface Digest {
-  take(senses: readonly Sense[], steers: readonly Steer[]): void;
+  take(senses: readonly (Sense | null)[], steers: readonly (Steer | null)[]): void;
   /** The digest so far; taking on afterwards is allowed. */
   hex(): string;
 }
@@ -33,9 +33,12 @@ export function startDigest(): Digest {
   return {
     take(senses, steers) {
       for (let index = 0; index < senses.length; index++) {
-        packSense(packer, senses[index]!);
+        const sense = senses[index] ?? null;
+        const steer = steers[index] ?? null;
+        if (sense === null || steer === null) continue;
+        packSense(packer, sense);
         add();
-        packSteer(packer, steers[index]!);
+        packSteer(packer, steer);
         add();
       }
     },

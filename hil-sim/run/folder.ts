@@ -76,7 +76,8 @@ export function openRunFolder(path: string, trial: Trial, resolvedYaml: string):
       if (failure !== null) throw failure;
       trackFile.add(trackRows(tracks, record));
       if (record.hearings.length > 0) frameFile.add(frameRows(names, record.hearings));
-      log.add(JSON.stringify({ tick: record.tick, senses: record.senses, steers: record.steers }));
+      const { tick, senses, steers, changes } = record;
+      log.add(JSON.stringify(changes.length === 0 ? { tick, senses, steers } : { tick, senses, steers, changes }));
       if (performance.now() - flushedMs >= FLUSH_MS) flush();
     },
     async close(outcome, reportHtml) {

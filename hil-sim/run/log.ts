@@ -14,6 +14,7 @@ import { join } from 'node:path';
 import { constants, createGunzip, gzip, gzipSync } from 'node:zlib';
 import type { Mission } from '../../messages/mission.ts';
 import type { Sense } from '../../messages/sense.ts';
+import type { Change } from '../sea/faults.ts';
 import type { Steer } from '../../messages/steer.ts';
 
 export const LOG_NAME = 'log.ndjson.gz';
@@ -32,8 +33,10 @@ export interface LogStart {
 
 export interface LogTick {
   readonly tick: number;
-  readonly senses: readonly Sense[];
-  readonly steers: readonly Steer[];
+  readonly senses: readonly (Sense | null)[];
+  readonly steers: readonly (Steer | null)[];
+  /** Faults and orders that took effect, by their place in the trial. */
+  readonly changes?: readonly Change[];
 }
 
 export interface LogEnd {

@@ -4,15 +4,16 @@
  * A vehicle named in `limits.except` does not count for forming up, the loop, gaps, currents, maps and
  * positions; the others' target gaps are those of the fleet without it. It always counts for
  * separation, frames and energy. From `formUp_s` on every counted vehicle counts at every tick,
- * whatever state it claims. Separation is in space (depth included). Every array is sized at start.
+ * whatever state it claims, until the script ends its part (`parts.ts`). Separation is in space (depth included). Every array is sized at start.
  */
 import { assert } from '../../messages/assert.ts';
-import type { MapMessage } from '../../messages/steer.ts';
+import type { MapMessage, Steer } from '../../messages/steer.ts';
 import type { Trial } from '../trial/schema.ts';
 import { formedUpS, judgeFormedUp, startFormedUp, type FormedUp } from './formed-up.ts';
 import { measureGaps, startGaps, type Gaps } from './gaps.ts';
 import { startHearings, takeHearing, type HearingCounts } from './hearings.ts';
 import { startMaps, takeMaps, type Maps, type Water } from './maps.ts';
+import { isOut, nextChangeS, outSpans, type OutSpan } from './parts.ts';
 import type { TickRecord } from './record.ts';
 import { addToBin, binAt, keepPoint, startSeries, type Series } from './series.ts';
 import { addSquare, addTo, clearTally, startTally, type Tally } from './tally.ts';
@@ -35,14 +36,16 @@ export interface Measures {
   readonly trial: Trial;
   readonly water: Water;
   readonly names: readonly string[];
-  readonly counted: Int32Array;
+  /** Fleet indices of the vehicles that count now, their gaps, and when that changes. */
+  readonly part: { counted: Int32Array; gaps: Gaps; changesS: number };
+  readonly outSpans: readonly OutSpan[];
+  readonly except: readonly string[];
   readonly isCounted: Uint8Array;
   readonly track: Track;
   readonly nearest: readonly Nearest[];
   /** By fleet index, renewed each tick. */
   readonly distanceM: Float64Array;
   readonly phases: Float64Array;
-  readonly gaps: Gaps;
   readonly formed: FormedUp;
   readonly tallies: LoopTallies;
   readonly maps: Maps;
@@ -70,6 +73,7 @@ export function startMeasures(trial: Trial, water: Water): Measures {
   const except = trial.limits.except ?? [];
   const counted = names.flatMap((name, index) => (except.includes(name) ? [] : [index]));
   const track = trackOf(trial.mission.loop);
+  const spans = outSpans(trial, track.lengthM);
   const ticks = Math.ceil(trial.duration / trial.tick) + 1;
   const column = (): Float64Array => new Float64Array(fleetSize);
   const tally = (): Tally => startTally(fleetSize);
@@ -78,12 +82,17 @@ export function startMeasures(trial: Trial, water: Water): Measures {
     water,
     names,
     track,
-    counted: Int32Array.from(counted),
+    part: {
+      counted: Int32Array.from(counted),
+      gaps: startGaps(trial.mission.spacing, counted, { fleetSize, lengthM: track.lengthM }),
+      changesS: nextChangeS(spans, -1),
+    },
+    outSpans: spans,
+    except,
     isCounted: Uint8Array.from(names, (name) => (except.includes(name) ? 0 : 1)),
     nearest: names.map(() => startNearest()),
     distanceM: column(),
     phases: column(),
-    gaps: startGaps(trial.mission.spacing, counted, { fleetSize, lengthM: track.lengthM }),
     formed: startFormedUp(trial.mission.formedUp),
     tallies: {
       crossTrack: tally(),
@@ -119,8 +128,12 @@ export function takeTick(m: Measures, record: TickRecord): void {
     m.distanceM[index] = nearest.place[0]!;
     m.phases[index] = nearest.place[1]!;
   }
-  measureGaps(m.gaps, m.phases);
-  const step = judgeFormedUp(m.formed, m.counted, { timeS, distanceM: m.distanceM, gapError: m.gaps.error });
+  if (timeS >= m.part.changesS) renewPart(m, timeS);
+  const { counted, gaps } = m.part;
+  measureGaps(gaps, m.phases);
+  const step = counted.length === 0
+    ? 'out'
+    : judgeFormedUp(m.formed, counted, { timeS, distanceM: m.distanceM, gapError: gaps.error });
   if (step === 'begins') beginAfresh(m);
   tallyVehicles(m, record, step !== 'out');
   tallyMaps(m, record, step !== 'out');
@@ -128,6 +141,18 @@ export function takeTick(m: Measures, record: TickRecord): void {
   tallyHearings(m, record);
   m.progress[0]! += 1;
   m.progress[1] = timeS;
+}
+
+/** Who counts from now on; gaps and their targets are those of the vehicles that do. */
+function renewPart(m: Measures, timeS: number): void {
+  const { trial, names, except, outSpans: spans, isCounted, part } = m;
+  const counted = names.flatMap((name, index) =>
+    (except.includes(name) || isOut(spans, index, timeS) ? [] : [index]));
+  isCounted.fill(0);
+  for (const index of counted) isCounted[index] = 1;
+  part.counted = Int32Array.from(counted);
+  part.gaps = startGaps(trial.mission.spacing, counted, { fleetSize: names.length, lengthM: m.track.lengthM });
+  part.changesS = nextChangeS(spans, timeS);
 }
 
 function beginAfresh(m: Measures): void {
@@ -148,34 +173,45 @@ function tallyVehicles(m: Measures, record: TickRecord, counts: boolean): void {
   for (let index = 0; index < m.names.length; index++) {
     const eastM = truth.eastM[index]!;
     const northM = truth.northM[index]!;
-    const { estimate, tick } = steers[index]!;
+    const steer = steers[index] ?? null;
     const at = index * series.bins + bin;
-    const current2 = normSquare(
-      estimate.currentEast_mps - truth.currentEastMps[index]!,
-      estimate.currentNorth_mps - truth.currentNorthMps[index]!,
-    );
-    const position2 = normSquare(estimate.east_m - eastM, estimate.north_m - northM);
     const distanceM = m.distanceM[index]!;
     addToBin(series, 'crossTrack', at, distanceM * distanceM);
-    addToBin(series, 'current', at, current2);
-    addToBin(series, 'position', at, position2);
     series.sampled.depth[at] = truth.depthM[index]!;
     series.sampled.speed[at] = truth.speedMps[index]!;
     series.sampled.battery[at] = truth.battery[index]!;
     keepPoint(series, index, timeS, eastM, northM);
     m.energyJ[index] = truth.energyJ[index]!;
     m.battery[index] = truth.battery[index]!;
-    if (tick !== record.tick) m.lateTicks[index]! += 1;
+    if (steer !== null) tallyBelief(m, record, { index, at, steer, counts: counts && m.isCounted[index] === 1 });
     if (m.isCounted[index] === 0) continue;
-    const gapError = Math.abs(m.gaps.error[index]!);
+    const gapError = Math.abs(m.part.gaps.error[index]!);
     addToBin(series, 'gap', at, gapError * gapError);
     if (!counts) continue;
     addTo(tallies.crossTrack, index, distanceM, timeS);
     addTo(tallies.gap, index, gapError, timeS);
-    addSquare(tallies.current, index, current2, timeS);
-    addSquare(tallies.position, index, position2, timeS);
     if (distanceM > m.crossTrackLimitM && Number.isNaN(m.breachS[0]!)) m.breachS[0] = timeS;
   }
+}
+
+/** What a vehicle believes against what is; an agent that is down believes nothing. */
+function tallyBelief(
+  m: Measures, record: TickRecord, of: { index: number; at: number; steer: Steer; counts: boolean },
+): void {
+  const { truth, timeS } = record;
+  const { index, at, steer } = of;
+  const { estimate } = steer;
+  const current2 = normSquare(
+    estimate.currentEast_mps - truth.currentEastMps[index]!,
+    estimate.currentNorth_mps - truth.currentNorthMps[index]!,
+  );
+  const position2 = normSquare(estimate.east_m - truth.eastM[index]!, estimate.north_m - truth.northM[index]!);
+  addToBin(m.series, 'current', at, current2);
+  addToBin(m.series, 'position', at, position2);
+  if (steer.tick !== record.tick) m.lateTicks[index]! += 1;
+  if (!of.counts) return;
+  addSquare(m.tallies.current, index, current2, timeS);
+  addSquare(m.tallies.position, index, position2, timeS);
 }
 
 function normSquare(east: number, north: number): number {
@@ -185,7 +221,7 @@ function normSquare(east: number, north: number): number {
 function tallyMaps(m: Measures, record: TickRecord, counts: boolean): void {
   let given = 0;
   for (let index = 0; index < m.names.length; index++) {
-    const map = m.isCounted[index] === 1 ? record.steers[index]!.map : null;
+    const map = m.isCounted[index] === 1 ? record.steers[index]?.map ?? null : null;
     m.givenMaps[index] = map;
     if (map !== null) given += 1;
   }

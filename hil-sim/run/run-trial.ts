@@ -15,7 +15,10 @@ export interface Watcher {
 
 /** Those who answer senses, as processes or in process. */
 export interface Agents {
-  answer(senses: readonly Sense[]): readonly Steer[] | Promise<readonly Steer[]>;
+  /** Steers in fleet order, null where the sense is. */
+  answer(senses: readonly (Sense | null)[]): readonly (Steer | null)[] | Promise<readonly (Steer | null)[]>;
+  /** A scripted reboot: ends the agent (`down`), or starts it anew (`up`) from the memory that it keeps. */
+  restart(index: number, phase: 'down' | 'up', memory: 'lost' | 'kept'): void | Promise<void>;
   /** Lets go of what the agents hold; called once, however the run ended. */
   close(): void | Promise<void>;
 }
@@ -56,12 +59,14 @@ export async function runTrial(options: RunOptions): Promise<RunResult> {
   try {
     while (sea.tick < ticks) {
       const { tick } = sea;
+      for (const { index, phase, memory } of sea.reboots()) await agents.restart(index, phase, memory);
       const senses = sea.perceive();
       const answer = agents.answer(senses);
       const steers = answer instanceof Promise ? await answer : answer;
       digest.take(senses, steers);
       const record: TickRecord = {
-        tick, timeS: tick * tickS, truth: sea.truth, senses, steers, hearings: sea.takeHearings(),
+        tick, timeS: tick * tickS, truth: sea.truth, senses, steers, changes: sea.changes(),
+        hearings: sea.takeHearings(),
       };
       for (const watcher of watchers) watcher.take(record);
       sea.advance(steers);

@@ -1,4 +1,5 @@
 /** `tracks.csv`: one row per vehicle at the first tick at or after every ten seconds. */
+import type { Steer } from '../../messages/steer.ts';
 import type { Trial } from '../trial/schema.ts';
 import type { TickRecord } from './record.ts';
 import { findNearest, startNearest, trackOf, type Nearest, type Track } from './track.ts';
@@ -40,7 +41,7 @@ export function trackRows(csv: TracksCsv, record: TickRecord): string {
 }
 
 function row(csv: TracksCsv, { timeS, truth, steers }: TickRecord, index: number): string {
-  const { state, estimate } = steers[index]!;
+  const steer = steers[index] ?? null;
   const nearest = csv.nearest[index]!;
   findNearest(csv.track, truth.eastM[index]!, truth.northM[index]!, nearest);
   const headingDeg = (truth.headingRad[index]! * DEG_PER_RAD).toFixed(2);
@@ -48,7 +49,7 @@ function row(csv: TracksCsv, { timeS, truth, steers }: TickRecord, index: number
     [
       seconds(timeS),
       csv.names[index],
-      state,
+      steer?.state ?? 'down',
       fixed(truth.eastM[index]!, 2),
       fixed(truth.northM[index]!, 2),
       fixed(truth.depthM[index]!, 2),
@@ -56,15 +57,24 @@ function row(csv: TracksCsv, { timeS, truth, steers }: TickRecord, index: number
       fixed(truth.speedMps[index]!, 3),
       fixed(truth.currentEastMps[index]!, 4),
       fixed(truth.currentNorthMps[index]!, 4),
-      fixed(estimate.east_m, 2),
-      fixed(estimate.north_m, 2),
-      fixed(estimate.currentEast_mps, 4),
-      fixed(estimate.currentNorth_mps, 4),
+      ...beliefs(steer),
       phase(nearest.place[1]!),
-      phase(estimate.phase),
+      steer === null ? '' : phase(steer.estimate.phase),
       fixed(100 * truth.battery[index]!, 2),
     ].join(',') + '\n'
   );
+}
+
+/** Estimated place and current; empty while the agent is down. */
+function beliefs(steer: Steer | null): string[] {
+  if (steer === null) return ['', '', '', ''];
+  const { estimate } = steer;
+  return [
+    fixed(estimate.east_m, 2),
+    fixed(estimate.north_m, 2),
+    fixed(estimate.currentEast_mps, 4),
+    fixed(estimate.currentNorth_mps, 4),
+  ];
 }
 
 /** Five places, never rounded up to a whole turn. */

@@ -6,17 +6,19 @@
  * A pure function of plan and steers: every draw is by count, every order is fixed, time is the tick
  * number times its length. The agents' mathematics stands elsewhere, and none of it is used here.
  */
+import { degFromRad } from '../../messages/angles.ts';
 import { assert } from '../../messages/assert.ts';
 import type { HeardFrame, Sense } from '../../messages/sense.ts';
 import type { Steer } from '../../messages/steer.ts';
-import { moveBody } from './body.ts';
+import { moveBody, type BodyOrder } from './body.ts';
 import { startDraw, type Draw } from './draw.ts';
+import { addedCurrents, changesAt, compassBiasAt, logScaleAt, ordersAt, rebootAt } from './faults.ts';
 import { endArrivals, sendFrames, startModem, type Delivery, type ModemState } from './modem.ts';
 import type { SeaPlan } from './plan.ts';
-import type { Hearing, Sea, Truth } from './sea.ts';
+import type { Hearing, Reboot, Sea, Truth } from './sea.ts';
 import { drawBiases, onboardTimeS, readCompassAndLog, readFix, startFixes, type FixState } from './sensors.ts';
 import { soundSpeedMps } from './sound.ts';
-import { currentAt } from './water.ts';
+import { currentAt, type Water } from './water.ts';
 
 /** Depth at which the sound speed is taken: half of the water, 100 m at most. */
 const SOUND_DEPTH_MAX_M = 100;
@@ -28,11 +30,17 @@ interface State {
   readonly fixes: FixState;
   readonly modem: ModemState;
   readonly scratch: Float64Array;
+  readonly water: Water;
+  /** Biases as drawn, which faults upset. */
+  readonly ownBiasRad: Float64Array;
+  readonly ownScale: Float64Array;
+  /** The last order of each vehicle, which its body keeps while its agent is down. */
+  readonly orders: BodyOrder[];
   readonly counts: { tick: number };
   /** Frames that the senses of the current tick hold. */
   deliveries: Delivery[];
   hearings: Hearing[];
-  senses: Sense[] | null;
+  senses: (Sense | null)[] | null;
 }
 
 function startTruth(plan: SeaPlan, draw: Draw): Truth {
@@ -58,10 +66,17 @@ function startTruth(plan: SeaPlan, draw: Draw): Truth {
 export function startSea(plan: SeaPlan): Sea {
   const draw = startDraw(plan.seed);
   const { temperatureDegC, salinityPsu, depthM } = plan.water;
+  const truth = startTruth(plan, draw);
   const state: State = {
     plan,
     draw,
-    truth: startTruth(plan, draw),
+    truth,
+    water: { currents: plan.currents, added: addedCurrents(plan.faults) },
+    ownBiasRad: truth.compassBiasRad.slice(),
+    ownScale: truth.logScale.slice(),
+    orders: plan.vehicles.map((vehicle) => ({
+      heading_deg: degFromRad(vehicle.startHeadingRad), speed_mps: 0, depth_m: vehicle.startDepthM,
+    })),
     fixes: startFixes(plan.vehicles.length),
     modem: startModem(plan, soundSpeedMps(temperatureDegC, salinityPsu, Math.min(depthM / 2, SOUND_DEPTH_MAX_M))),
     scratch: new Float64Array(2),
@@ -70,27 +85,48 @@ export function startSea(plan: SeaPlan): Sea {
     hearings: [],
     senses: null,
   };
-  takeCurrents(state);
+  renewTruth(state);
   return {
     get tick() { return state.counts.tick; },
     get framesSent() { return state.modem.counts.framesSent; },
     truth: state.truth,
     perceive: () => perceive(state),
     advance: (steers) => advance(state, steers),
+    reboots: () => rebootsNow(state),
+    changes: () => changesAt(plan.faults, plan.orders, { timeS: state.counts.tick * plan.tickS, tickS: plan.tickS }),
     takeHearings: () => state.hearings.splice(0),
-    currentAt: (eastM, northM, timeS, out) => currentAt(plan.currents, { eastM, northM, timeS }, out),
+    currentAt: (eastM, northM, timeS, out) => currentAt(state.water, { eastM, northM, timeS }, out),
   };
 }
 
+function isDown(state: State, index: number, tick: number): boolean {
+  return tick >= 0 && rebootAt(state.plan.faults, index, tick * state.plan.tickS) !== null;
+}
+
+/** Agents that were up in the last tick and are down in this, or the other way round. */
+function rebootsNow(state: State): Reboot[] {
+  const { plan, counts } = state;
+  if (!plan.faults.some(({ kind }) => kind === 'reboot')) return [];
+  return plan.vehicles.flatMap((_vehicle, index): Reboot[] => {
+    const before = isDown(state, index, counts.tick - 1);
+    const now = isDown(state, index, counts.tick);
+    if (before === now) return [];
+    const at = now ? counts.tick : counts.tick - 1;
+    return [{ index, phase: now ? 'down' : 'up', memory: rebootAt(plan.faults, index, at * plan.tickS) ?? 'lost' }];
+  });
+}
+
 /** The senses of the current tick; asked again, the same ones. */
-function perceive(state: State): readonly Sense[] {
+function perceive(state: State): readonly (Sense | null)[] {
   if (state.senses !== null) return state.senses;
   const { plan, truth, draw, scratch, fixes } = state;
   const { tick } = state.counts;
   const heard: HeardFrame[][] = plan.vehicles.map(() => []);
   for (const { toIndex, frame } of state.deliveries) heard[toIndex]!.push(frame);
   state.senses = plan.vehicles.map((vehicle, index) => {
-    const at = { draw, plan: vehicle, truth, index, tick, tickS: plan.tickS, scratch };
+    const at = { draw, plan: vehicle, truth, index, tick, tickS: plan.tickS, faults: plan.faults, scratch };
+    const fix = readFix(at, fixes);
+    if (isDown(state, index, tick)) return null;
     const { heading_deg, speed_mps } = readCompassAndLog(at);
     return {
       tick,
@@ -99,55 +135,63 @@ function perceive(state: State): readonly Sense[] {
       speed_mps,
       depth_m: truth.depthM[index]!,
       battery: truth.battery[index]!,
-      fix: readFix(at, fixes),
+      fix,
       heard: heard[index]!,
-      orders: [],
+      orders: ordersAt(plan.orders, index, { timeS: tick * plan.tickS, tickS: plan.tickS }),
     };
   });
   return state.senses;
 }
 
 /** Applies the steers of the current tick and moves to the next. */
-function advance(state: State, steers: readonly Steer[]): void {
-  const { plan, truth, modem, draw, scratch, counts } = state;
+function advance(state: State, steers: readonly (Steer | null)[]): void {
+  const { plan, truth, modem, draw, scratch, counts, water, orders } = state;
   assert(steers.length === plan.vehicles.length, 'there is a steer for every vehicle');
-  if (state.senses === null) perceive(state);
+  const senses = perceive(state);
   const timeS = counts.tick * plan.tickS;
   judgeHearings(state, steers);
   steers.forEach((steer, index) => {
+    assert((steer === null) === (senses[index] === null), 'who perceives steers, and nobody else');
+    if (steer === null) {
+      modem.waiting[index] = null;
+      return;
+    }
     assert(steer.tick === counts.tick, 'a steer answers the current tick');
+    orders[index] = steer;
     if (steer.say !== null) modem.waiting[index] = steer.say;
   });
   sendFrames(modem, truth, { draw, timeS });
   plan.vehicles.forEach((vehicle, index) => {
-    moveBody({
-      truth, index, plan: vehicle, currents: plan.currents, steer: steers[index]!, timeS, tickS: plan.tickS, scratch,
-    });
+    moveBody({ truth, index, plan: vehicle, water, order: orders[index]!, timeS, tickS: plan.tickS, scratch });
   });
   counts.tick += 1;
-  takeCurrents(state);
+  renewTruth(state);
   state.senses = null;
   state.deliveries = [];
-  endArrivals(modem, counts.tick * plan.tickS, state);
+  endArrivals(modem, counts.tick * plan.tickS, {
+    deliveries: state.deliveries, hearings: state.hearings, isDown: (index) => isDown(state, index, counts.tick),
+  });
 }
 
 /** What reached an agent was `heard` if the agent used it, `garbled` if it was, `refused` otherwise. */
-function judgeHearings(state: State, steers: readonly Steer[]): void {
+function judgeHearings(state: State, steers: readonly (Steer | null)[]): void {
   const place = new Array<number>(steers.length).fill(0);
   for (const { toIndex, hearing } of state.deliveries) {
-    const said = steers[toIndex]!.heard[place[toIndex]!++];
+    const said = steers[toIndex]?.heard[place[toIndex]!++];
     const refused = hearing.fate === 'heard' && said !== 'used';
     state.hearings.push(refused ? { ...hearing, fate: 'refused' } : hearing);
   }
 }
 
-/** Renews the true current at every vehicle. */
-function takeCurrents(state: State): void {
+/** Renews what follows from place, time and the script: the current at every vehicle, and its biases. */
+function renewTruth(state: State): void {
   const { truth, plan, scratch } = state;
   const timeS = state.counts.tick * plan.tickS;
   for (let index = 0; index < plan.vehicles.length; index++) {
-    currentAt(plan.currents, { eastM: truth.eastM[index]!, northM: truth.northM[index]!, timeS }, scratch);
+    currentAt(state.water, { eastM: truth.eastM[index]!, northM: truth.northM[index]!, timeS }, scratch);
     truth.currentEastMps[index] = scratch[0]!;
     truth.currentNorthMps[index] = scratch[1]!;
+    truth.compassBiasRad[index] = compassBiasAt(plan.faults, index, { timeS, ownRad: state.ownBiasRad[index]! });
+    truth.logScale[index] = logScaleAt(plan.faults, index, { timeS, own: state.ownScale[index]! });
   }
 }

@@ -9,9 +9,9 @@
  */
 import { radFromDeg } from '../../messages/angles.ts';
 import type { Steer } from '../../messages/steer.ts';
-import type { CurrentPlan, VehiclePlan } from './plan.ts';
+import type { VehiclePlan } from './plan.ts';
 import type { Truth } from './sea.ts';
-import { currentAt } from './water.ts';
+import { currentAt, type Water } from './water.ts';
 
 const TURN = 2 * Math.PI;
 
@@ -25,12 +25,15 @@ function clamp(value: number, least: number, most: number): number {
   return value < least ? least : value > most ? most : value;
 }
 
+/** The last order that a vehicle's agent gave. */
+export type BodyOrder = Pick<Steer, 'heading_deg' | 'speed_mps' | 'depth_m'>;
+
 export interface BodyTick {
   readonly truth: Truth;
   readonly index: number;
   readonly plan: VehiclePlan;
-  readonly currents: readonly CurrentPlan[];
-  readonly steer: Steer;
+  readonly water: Water;
+  readonly order: BodyOrder;
   /** True time at the start of the tick, and its length. */
   readonly timeS: number;
   readonly tickS: number;
@@ -40,14 +43,14 @@ export interface BodyTick {
 
 /** Moves one vehicle of `truth` from the start of a tick to its end. */
 export function moveBody(tick: BodyTick): void {
-  const { truth, index, plan, steer, tickS, scratch } = tick;
+  const { truth, index, plan, order, tickS, scratch } = tick;
   const alive = truth.battery[index]! > 0;
   const headingRad = truth.headingRad[index]!;
-  const wantedRad = radFromDeg(steer.heading_deg) - truth.compassBiasRad[index]!;
+  const wantedRad = radFromDeg(order.heading_deg) - truth.compassBiasRad[index]!;
   const turnMost = plan.turnRateRadps * tickS;
   const turnRad = alive ? clamp(turnBetween(headingRad, wantedRad), -turnMost, turnMost) : 0;
   const speedMps = truth.speedMps[index]!;
-  const ordered = steer.speed_mps / (1 + truth.logScale[index]!);
+  const ordered = order.speed_mps / (1 + truth.logScale[index]!);
   const wantedMps = alive ? (ordered <= 0 ? 0 : clamp(ordered, plan.speedMinMps, plan.speedMaxMps)) : 0;
   const kept = plan.speedLagS > 0 ? Math.exp(-tickS / plan.speedLagS) : 0;
   const keptHalf = plan.speedLagS > 0 ? Math.exp(-tickS / 2 / plan.speedLagS) : 0;
@@ -57,7 +60,7 @@ export function moveBody(tick: BodyTick): void {
   const waterNorth = midMps * Math.cos(midRad);
   const midEastM = truth.eastM[index]! + (waterEast + truth.currentEastMps[index]!) * (tickS / 2);
   const midNorthM = truth.northM[index]! + (waterNorth + truth.currentNorthMps[index]!) * (tickS / 2);
-  currentAt(tick.currents, { eastM: midEastM, northM: midNorthM, timeS: tick.timeS + tickS / 2 }, scratch);
+  currentAt(tick.water, { eastM: midEastM, northM: midNorthM, timeS: tick.timeS + tickS / 2 }, scratch);
   truth.eastM[index]! += (waterEast + scratch[0]!) * tickS;
   truth.northM[index]! += (waterNorth + scratch[1]!) * tickS;
   const newRad = (headingRad + turnRad) % TURN;
@@ -65,7 +68,7 @@ export function moveBody(tick: BodyTick): void {
   truth.speedMps[index] = wantedMps + (speedMps - wantedMps) * kept;
   const climbM = plan.climbMps * tickS;
   const depthM = truth.depthM[index]!;
-  truth.depthM[index] = Math.max(0, depthM + clamp(steer.depth_m - depthM, -climbM, climbM));
+  truth.depthM[index] = Math.max(0, depthM + clamp(order.depth_m - depthM, -climbM, climbM));
   useEnergy(truth, index, { plan, midMps, tickS });
 }
 

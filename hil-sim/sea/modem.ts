@@ -6,13 +6,14 @@
  * the steer to sense n leaves in the next own slot that begins at or after tick n; a newer one takes
  * the place of one still waiting. On the water a frame lasts turn-on + 8·bytes/rate; its last bit
  * arrives a travel time later, from the distance at the tick of sending. Two frames that overlap at a
- * hearer are lost to it both (`collided`); one that overlaps its own sending is too (`deaf`). Delay and
- * repetition of the link come after reception, so they collide with nothing.
+ * hearer are lost to it both (`collided`); one that overlaps its own sending, or meets an agent that is
+ * down, is too (`deaf`). Delay and repetition of the link come after reception, so they collide with nothing.
  */
 import { assert } from '../../messages/assert.ts';
 import type { HeardFrame } from '../../messages/sense.ts';
 import { garble, nextFate, startLinks, type LinkFate, type LinkState } from './channel.ts';
 import type { Draw } from './draw.ts';
+import { linkAt } from './faults.ts';
 import type { SeaPlan, VehiclePlan } from './plan.ts';
 import type { FrameFate, Hearing, Truth } from './sea.ts';
 import { onboardTimeS } from './sensors.ts';
@@ -114,7 +115,9 @@ function sendTo(modem: ModemState, truth: Truth, sending: Sending): void {
   const pair = from * plan.vehicles.length + to;
   const entity = from * PAIR_KEY + to;
   const count = modem.links.sent[pair]!;
-  nextFate(modem.links, { draw, link: plan.modem.link, pair, entity, scratch: modem.scratch }, fate);
+  const { link, lossByFault } = linkAt(plan.faults, { from, to, timeS: slotS }, plan.modem.link);
+  nextFate(modem.links, { draw, link, pair, entity, scratch: modem.scratch }, fate);
+  const lostAs: FrameFate = lossByFault ? 'dropped-by-fault' : 'lost';
   const lastBitS = slotS + sending.airS + travelS;
   const arrival: Arrival = {
     sentS: slotS,
@@ -124,7 +127,7 @@ function sendTo(modem: ModemState, truth: Truth, sending: Sending): void {
     lastBitS,
     heardS: lastBitS + fate.delayS,
     hex: fate.garbled ? garble(draw, { entity, count }, sending.hex) : sending.hex,
-    fate: fate.lost ? 'lost' : fate.garbled ? 'garbled' : 'heard',
+    fate: fate.lost ? lostAs : fate.garbled ? 'garbled' : 'heard',
     isRepeat: false,
   };
   markOverlaps(modem, arrival);
@@ -135,6 +138,11 @@ function sendTo(modem: ModemState, truth: Truth, sending: Sending): void {
   assert(modem.arrivals.length < 4096, 'frames in flight end');
 }
 
+/** Whether the link let the frame through, so that something else may still spoil it. */
+function isThere(arrival: Arrival): boolean {
+  return arrival.fate !== 'lost' && arrival.fate !== 'dropped-by-fault';
+}
+
 function overlaps(a: Arrival, b: Arrival): boolean {
   return a.firstBitS < b.lastBitS && b.firstBitS < a.lastBitS;
 }
@@ -143,8 +151,8 @@ function markOverlaps(modem: ModemState, arrival: Arrival): void {
   for (const other of modem.arrivals) {
     if (other.toIndex !== arrival.toIndex || other.fromIndex === arrival.fromIndex) continue;
     if (!overlaps(other, arrival)) continue;
-    if (other.fate !== 'lost') other.fate = 'collided';
-    if (arrival.fate !== 'lost') arrival.fate = 'collided';
+    if (isThere(other)) other.fate = 'collided';
+    if (isThere(arrival)) arrival.fate = 'collided';
   }
 }
 
@@ -169,7 +177,8 @@ export interface Delivery {
  * order of time, sender and hearer; what did not becomes a hearing at once.
  */
 export function endArrivals(
-  modem: ModemState, timeS: number, into: { deliveries: Delivery[]; hearings: Hearing[] },
+  modem: ModemState, timeS: number,
+  into: { deliveries: Delivery[]; hearings: Hearing[]; isDown: (index: number) => boolean },
 ): void {
   const ended = modem.arrivals.filter((arrival) => arrival.heardS <= timeS);
   if (ended.length === 0) return;
@@ -180,7 +189,8 @@ export function endArrivals(
   modem.arrivals.length = kept;
   ended.sort((a, b) => a.heardS - b.heardS || a.fromIndex - b.fromIndex || a.toIndex - b.toIndex);
   for (const arrival of ended) {
-    if (arrival.fate !== 'lost' && arrival.fate !== 'collided' && wasSending(modem, arrival)) arrival.fate = 'deaf';
+    const isDeaf = into.isDown(arrival.toIndex) || wasSending(modem, arrival);
+    if (isThere(arrival) && arrival.fate !== 'collided' && isDeaf) arrival.fate = 'deaf';
     const reaches = arrival.fate === 'heard' || arrival.fate === 'garbled';
     const hearing: Hearing = {
       sentS: arrival.sentS,

@@ -9,6 +9,9 @@ export interface SeaPlan {
   readonly vehicles: readonly VehiclePlan[];
   readonly currents: readonly CurrentPlan[];
   readonly modem: ModemPlan;
+  /** In the order of the script: of two at once on one quantity the later wins. */
+  readonly faults: readonly FaultPlan[];
+  readonly orders: readonly OrderPlan[];
   readonly water: { readonly temperatureDegC: number; readonly salinityPsu: number; readonly depthM: number };
 }
 
@@ -77,4 +80,37 @@ export interface LinkPlan {
   readonly jitterS: number;
   readonly repeat: number;
   readonly garble: number;
+}
+
+/** When a fault holds: from `atS`, inclusive, to `untilS`, exclusive; infinite to the end. */
+interface Span {
+  readonly atS: number;
+  readonly untilS: number;
+}
+
+/** Vehicles by their place in the fleet. */
+type Vehicles = readonly number[];
+
+export type FaultPlan = Span & (
+  | { readonly kind: 'link'; readonly from: Vehicles; readonly to: Vehicles; readonly change: Partial<LinkPlan> }
+  | {
+      readonly kind: 'compass'; readonly vehicles: Vehicles; readonly how: 'step' | 'bias' | 'drift';
+      /** Radians; for `drift`, radians per second. */
+      readonly amount: number;
+    }
+  | { readonly kind: 'log'; readonly vehicles: Vehicles; readonly how: 'step' | 'scale'; readonly amount: number }
+  | { readonly kind: 'fix'; readonly vehicles: Vehicles; readonly upset: FixUpset }
+  | { readonly kind: 'reboot'; readonly vehicles: Vehicles; readonly memory: 'lost' | 'kept' }
+  | { readonly kind: 'current'; readonly current: CurrentPlan }
+);
+
+export type FixUpset =
+  | { readonly how: 'outage' }
+  | { readonly how: 'jump'; readonly eastM: number; readonly northM: number }
+  | { readonly how: 'outliers'; readonly share: number; readonly sigmaM: number };
+
+export interface OrderPlan {
+  readonly atS: number;
+  readonly vehicles: Vehicles;
+  readonly order: 'hold' | 'home' | 'surface' | 'resume';
 }

@@ -6,6 +6,7 @@
  */
 import type { Sense } from '../../messages/sense.ts';
 import type { Steer } from '../../messages/steer.ts';
+import type { Change } from './faults.ts';
 
 /** True state at the current tick, one entry per vehicle in fleet order; read-only to callers. */
 export interface Truth {
@@ -23,7 +24,7 @@ export interface Truth {
   readonly battery: Float64Array;
   /** Energy used since the start. */
   readonly energyJ: Float64Array;
-  /** Errors as drawn, for the report and the estimator's checks. */
+  /** Errors as they are now, for the report and the estimator's checks. */
   readonly compassBiasRad: Float64Array;
   readonly logScale: Float64Array;
 }
@@ -44,13 +45,24 @@ export interface Hearing {
   readonly fate: FrameFate;
 }
 
+/** A scripted reboot as it meets an agent. */
+export interface Reboot {
+  readonly index: number;
+  readonly phase: 'down' | 'up';
+  readonly memory: 'lost' | 'kept';
+}
+
 export interface Sea {
   readonly tick: number;
   readonly truth: Truth;
-  /** Senses of the current tick, one per vehicle in fleet order. */
-  perceive(): readonly Sense[];
-  /** Applies the steers of the current tick, one per vehicle in fleet order, and moves to the next. */
-  advance(steers: readonly Steer[]): void;
+  /** Senses of the current tick in fleet order; null for a vehicle whose agent is down by the script. */
+  perceive(): readonly (Sense | null)[];
+  /** Applies the steers of the current tick, null where the sense was, and moves to the next. */
+  advance(steers: readonly (Steer | null)[]): void;
+  /** Agents that go down or come up before this tick is perceived, in fleet order. */
+  reboots(): readonly Reboot[];
+  /** Faults and orders that take effect in this tick. */
+  changes(): readonly Change[];
   /** Hearings that ended since the last call, ordered by time, sender, hearer. */
   takeHearings(): readonly Hearing[];
   /** The true current at any place and true time, written to `out` as east, north in m/s. */

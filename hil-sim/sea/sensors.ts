@@ -10,7 +10,8 @@
 import { headingDegFromRad } from '../../messages/angles.ts';
 import type { Fix } from '../../messages/sense.ts';
 import { PURPOSE, normalPair, uniform, type Draw } from './draw.ts';
-import type { VehiclePlan } from './plan.ts';
+import { fixUpsetAt } from './faults.ts';
+import type { FaultPlan, FixUpset, VehiclePlan } from './plan.ts';
 import type { Truth } from './sea.ts';
 
 const SURFACE_DEPTH_M = 1;
@@ -53,6 +54,7 @@ export interface SensorTick {
   readonly index: number;
   readonly tick: number;
   readonly tickS: number;
+  readonly faults: readonly FaultPlan[];
   readonly scratch: Float64Array;
 }
 
@@ -73,8 +75,10 @@ export function readFix(at: SensorTick, fixes: FixState): Fix | null {
   if (tick * tickS >= dueS) {
     const count = fixes.measured[index]!;
     fixes.measured[index] = count + 1;
-    if (plan.fixFrom === 'baseline' || truth.depthM[index]! < SURFACE_DEPTH_M) {
-      fixes.waiting[index] = measureFix(at, count);
+    const upset = fixUpsetAt(at.faults, index, tick * tickS);
+    const isWithin = plan.fixFrom === 'baseline' || truth.depthM[index]! < SURFACE_DEPTH_M;
+    if (isWithin && upset?.how !== 'outage') {
+      fixes.waiting[index] = measureFix(at, count, upset);
       fixes.arrivesTick[index] = tick + Math.ceil(plan.fixLatencyS / tickS);
     }
   }
@@ -84,15 +88,19 @@ export function readFix(at: SensorTick, fixes: FixState): Fix | null {
   return waiting;
 }
 
-function measureFix(at: SensorTick, count: number): Fix {
+function measureFix(at: SensorTick, count: number, upset: FixUpset | null): Fix {
   const { draw, plan, truth, index, scratch } = at;
-  const isOutlier = uniform(draw, { entity: index, purpose: PURPOSE.fixOutlier, count }) < plan.fixOutlierShare;
-  const sigmaM = isOutlier ? plan.fixOutlierSigmaM : plan.fixSigmaM;
+  const outliers = upset?.how === 'outliers'
+    ? upset
+    : { share: plan.fixOutlierShare, sigmaM: plan.fixOutlierSigmaM };
+  const isOutlier = uniform(draw, { entity: index, purpose: PURPOSE.fixOutlier, count }) < outliers.share;
+  const sigmaM = isOutlier ? outliers.sigmaM : plan.fixSigmaM;
+  const jump = upset?.how === 'jump' ? upset : { eastM: 0, northM: 0 };
   normalPair(draw, { entity: index, purpose: PURPOSE.fixNoise, count }, scratch);
   return {
     at_s: onboardTimeS(plan, at.tick * at.tickS),
-    east_m: truth.eastM[index]! + sigmaM * scratch[0]! + 0,
-    north_m: truth.northM[index]! + sigmaM * scratch[1]! + 0,
+    east_m: truth.eastM[index]! + jump.eastM + sigmaM * scratch[0]! + 0,
+    north_m: truth.northM[index]! + jump.northM + sigmaM * scratch[1]! + 0,
     sigma_m: plan.fixSigmaM,
   };
 }

@@ -6,6 +6,7 @@
  * Lamb-Oseen, v = Γ/(2πr)·(1 − e^(−r²/rc²)), whose speed peaks at 1.1209 rc (METHODS A20). Shear: flows
  * toward `bearing`, zero on the line through the datum along it, growing to the right of it.
  */
+import type { AddedCurrent } from './faults.ts';
 import type { CurrentPlan } from './plan.ts';
 
 /** Where a Lamb-Oseen vortex is fastest, in core radii: the root of 2x² = e^(x²) − 1. */
@@ -67,9 +68,18 @@ function addEddy(eddy: Extract<CurrentPlan, { kind: 'eddy' }>, at: Place, out: F
   out[1]! += sense * perS * eastM;
 }
 
+/** The true water: its currents, and those that faults add for a span. */
+export interface Water {
+  readonly currents: readonly CurrentPlan[];
+  readonly added: readonly AddedCurrent[];
+}
+
 /** The true current at a place and true time, written to `out` as east, north in m/s. */
-export function currentAt(currents: readonly CurrentPlan[], at: Place, out: Float64Array): void {
+export function currentAt(water: Water, at: Place, out: Float64Array): void {
   out[0] = 0;
   out[1] = 0;
-  for (const kind of currents) addCurrent(kind, at, out);
+  for (const kind of water.currents) addCurrent(kind, at, out);
+  for (const { atS, untilS, current } of water.added) {
+    if (atS <= at.timeS && at.timeS < untilS) addCurrent(current, at, out);
+  }
 }

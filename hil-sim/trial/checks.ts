@@ -6,6 +6,7 @@ import { FRAME_BYTES, FRAME_POSITION_MAX_M } from '../../messages/frame.ts';
 import { SETTINGS, type Setting, type SettingKey } from '../../messages/settings.ts';
 import { formatQuantity, type Dimension } from '../../messages/units.ts';
 import type { Path } from './documents.ts';
+import { checkScript } from './fault-checks.ts';
 import { offsetsOf } from './missions.ts';
 import type { Trial, TrialCurrent } from './schema.ts';
 import { fullVehicles } from './vehicles.ts';
@@ -30,6 +31,7 @@ export function checkTrial(trial: Trial): Finding[] {
     ...checkModem(trial),
     ...checkSettings(trial),
     ...checkLimits(trial),
+    ...checkScript(trial),
   ];
 }
 

@@ -19,8 +19,13 @@ interface Row {
 const SHAPES_LATER = ['ellipse', 'racetrack', 'outline'];
 
 const ROWS: readonly Row[] = [
-  { path: ['faults'] },
-  { path: ['orders'] },
+  {
+    path: ['faults', '*', 'kind'],
+    values: [
+      'deaf', 'blackout', 'noise', 'collisions', 'forged', 'replayed', 'thruster', 'rudder', 'battery', 'clock',
+      'broker', 'network', 'agent',
+    ],
+  },
   { path: ['mission', 'loops'] },
   { path: ['mission', 'moving'] },
   { path: ['mission', 'follow'] },

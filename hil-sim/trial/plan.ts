@@ -1,5 +1,6 @@
 /** From a checked trial to what the sea is told. */
 import type { CurrentPlan, SeaPlan, VehiclePlan } from '../sea/plan.ts';
+import { faultPlan, vehicleIndexes } from './fault-plan.ts';
 import type { Trial, TrialCurrent } from './schema.ts';
 import { fullVehicles, type FullVehicle } from './vehicles.ts';
 
@@ -10,6 +11,8 @@ export function seaPlan(trial: Trial): SeaPlan {
     tickS: trial.tick,
     vehicles: fullVehicles(trial).map(vehiclePlan),
     currents: water.currents.map(currentPlan),
+    faults: trial.faults.map((fault) => faultPlan(trial, fault)),
+    orders: trial.orders.map(({ at, vehicle, order }) => ({ atS: at, vehicles: vehicleIndexes(trial, vehicle), order })),
     modem: {
       frameBytes: modem.frame,
       bitRateBps: modem.bitRate,

@@ -12,6 +12,7 @@ import { name } from '../../messages/fields.ts';
 import { FLEET_MAX, NOTE_END_MAX_S } from '../../messages/frame.ts';
 import { SETTINGS, type Setting, type SettingKey } from '../../messages/settings.ts';
 import { formatQuantity } from '../../messages/units.ts';
+import { faultSchema, orderSchema } from './fault-schema.ts';
 import { quantity } from './quantity.ts';
 
 const length = (min?: number, max?: number) => quantity('length', { min: min ?? -1e6, max: max ?? 1e6 });
@@ -234,6 +235,8 @@ export const trialSchema = z.strictObject({
   onboard: z.strictObject(onboardShape).prefault({}),
   water: waterSchema,
   modem: modemSchema.prefault({}),
+  faults: z.array(faultSchema).max(1000).default([]),
+  orders: z.array(orderSchema).max(1000).default([]),
   limits: limitsSchema.prefault({}),
 });
 

@@ -70,7 +70,9 @@ function describeUnion(issue: Extract<Issue, { code: 'invalid_union' }>, root: u
   const found = valueAt(root, path);
   const last = path.at(-1);
   if ('discriminator' in issue && issue.discriminator !== undefined) {
-    const kinds = ['uniform', 'tide', 'eddy', 'shear'];
+    const kinds = path[0] === 'faults'
+      ? ['link', 'compass', 'log', 'fix', 'reboot', 'current']
+      : ['uniform', 'tide', 'eddy', 'shear'];
     return [{ path, message: `is ${shown(found)}, but must be ${oneOf(kinds)}${meant(String(found), kinds)}`, atKey: false }];
   }
   if (last === 'spacing') {
