@@ -93,6 +93,7 @@ export function recordOf(
     truth,
     senses: moments.map((moment) => senseOf(tick, tickS, moment)),
     steers: moments.map((moment) => steerOf(tick, moment)),
+    changes: [],
     hearings: more.hearings ?? [],
   };
 }
