@@ -22,6 +22,10 @@ import { addTrack, midTrack, startTrack, tailWay, trackCount, wayBack, type Trac
 export type { CurrentAnswer, PositionAnswer };
 
 const HOUR_S = 3600;
+/** A gap in the ticks longer than this many of them is a way that nobody reckoned. */
+const GAP_TICKS = 5;
+/** How wrong a guess from the pattern's open place may be, per axis. */
+const GUESS_SIGMA_M = 60;
 /** Ticks between two renewals of the stated position spread; a fix renews it at once. */
 const SPREAD_TICKS = 10;
 /** The box of the map reaches this many loop radii from its centre. */
@@ -43,8 +47,12 @@ interface Memory {
   lastNorthMps: number;
   sinceSpread: number;
   refused: number;
-  /** Numbers that the next own note declares skipped. */
-  skip: number;
+  /** Whether this agent has issued a note since it started. */
+  hasIssued: boolean;
+  /** The greatest number that any peer has said of this vehicle's own notes. */
+  ownNumberHeard: number;
+  /** Whether the agent started in the middle of a run, and has no idea yet where it is. */
+  isLost: boolean;
   whitePerS: number;
 }
 
@@ -100,7 +108,8 @@ export function startEstimator(mission: Mission): Estimator {
       eastM: start.east_m, northM: start.north_m, varEastM2: sigmaM ** 2, covEastNorthM2: 0, varNorthM2: sigmaM ** 2,
     },
     memory: {
-      hasTicked: false, lastAtS: 0, lastEastMps: 0, lastNorthMps: 0, sinceSpread: SPREAD_TICKS, refused: 0, skip: 0,
+      hasTicked: false, lastAtS: 0, lastEastMps: 0, lastNorthMps: 0, sinceSpread: SPREAD_TICKS, refused: 0,
+      hasIssued: false, ownNumberHeard: 0, isLost: false,
       whitePerS: mission.self.logSigma_mps ** 2
         + (mission.self.cruise_mps * radFromDeg(mission.self.compassSigma_deg)) ** 2,
     },
@@ -161,17 +170,45 @@ export function biasNow(estimator: Estimator, out: BiasAnswer): void {
 }
 
 /**
- * After a reboot with lost memory: the next own note is numbered beyond `lastKnown`, and says which
- * numbers it leaves out, so that nobody waits for them.
+ * What peers say of this vehicle's own notes: the next one is numbered beyond, so that no number is
+ * issued twice, even after a restart with lost memory.
  */
-export function resumeNumbering(estimator: Estimator, lastKnown: number): void {
-  if (lastKnown >= newestNumber(estimator.log, estimator.selfIndex)) estimator.memory.skip = NOTE_SKIPPED_MAX;
+export function hearOwnNumber(estimator: Estimator, number: number): void {
+  const { memory } = estimator;
+  memory.ownNumberHeard = Math.max(memory.ownNumberHeard, number);
+}
+
+/** A start in the middle of a run, with memory lost: the start place says nothing of where it is now. */
+export function startLost(estimator: Estimator): void {
+  const { anchor, memory, mission } = estimator;
+  anchor.sigmaM = mission.keepIn.radius_m;
+  anchor.isFix = false;
+  memory.isLost = true;
+}
+
+export function isLost(estimator: Estimator): boolean {
+  return estimator.memory.isLost;
+}
+
+/** Takes a rough place for the present one, until a fix comes. */
+export function guessPosition(estimator: Estimator, eastM: number, northM: number): void {
+  const { anchor, leg, memory } = estimator;
+  anchor.eastM = eastM;
+  anchor.northM = northM;
+  anchor.sigmaM = GUESS_SIGMA_M;
+  anchor.noteNumber = 0;
+  anchor.isFix = false;
+  resetLeg(leg, memory.lastAtS);
+  memory.isLost = false;
+  memory.sinceSpread = SPREAD_TICKS;
+  renewPosition(estimator);
 }
 
 function moveOn(estimator: Estimator, tick: EstimatorTick): void {
   const { memory, leg, map, track, position } = estimator;
   const eastMps = tick.speedMps * Math.sin(tick.headingRad);
   const northMps = tick.speedMps * Math.cos(tick.headingRad);
+  if (memory.hasTicked && tick.atS - memory.lastAtS > GAP_TICKS * estimator.mission.tick_s) bridgeGap(estimator, tick.atS);
   if (memory.hasTicked) {
     const seconds = tick.atS - memory.lastAtS;
     const way = {
@@ -191,6 +228,21 @@ function moveOn(estimator: Estimator, tick: EstimatorTick): void {
   memory.lastAtS = tick.atS;
   memory.lastEastMps = eastMps;
   memory.lastNorthMps = northMps;
+}
+
+/** Time went by without ticks: the place is where it was, as uncertain as the vehicle is fast. */
+function bridgeGap(estimator: Estimator, atS: number): void {
+  const { anchor, leg, position, memory, mission } = estimator;
+  const wayM = (atS - memory.lastAtS) * mission.self.speedMax_mps;
+  anchor.eastM = position.eastM;
+  anchor.northM = position.northM;
+  anchor.sigmaM = Math.min(mission.keepIn.radius_m, Math.sqrt(position.varEastM2 + position.varNorthM2 + wayM * wayM));
+  anchor.noteNumber = 0;
+  anchor.isFix = false;
+  resetLeg(leg, atS);
+  memory.lastAtS = atS;
+  memory.sinceSpread = SPREAD_TICKS;
+  memory.hasIssued = false;
 }
 
 function renewPosition(estimator: Estimator): void {
@@ -244,6 +296,7 @@ function takeFix(estimator: Estimator, fix: EstimatorFix): Note | null {
   anchor.sigmaM = fix.sigmaM;
   anchor.noteNumber = note === null ? 0 : note.number;
   anchor.isFix = true;
+  estimator.memory.isLost = false;
   resetLeg(leg, fix.atS);
   const ways = trackCount(track);
   for (let back = ways; back >= 1; back--) {
@@ -257,7 +310,9 @@ function issueNote(
   estimator: Estimator, fix: EstimatorFix, tail: { seconds: number; waterEastM: number; waterNorthM: number },
 ): Note | null {
   const { anchor, leg, log, memory, selfIndex, track, map } = estimator;
-  const number = newestNumber(log, selfIndex) + 1 + memory.skip;
+  const last = Math.max(newestNumber(log, selfIndex), memory.ownNumberHeard);
+  const skip = !memory.hasIssued && last > 0 ? NOTE_SKIPPED_MAX : 0;
+  const number = last + 1 + skip;
   if (number > NOTE_NUMBER_MAX) return null;
   const seconds = fix.atS - leg.startS;
   const waterEastM = leg.waterEastM - tail.waterEastM;
@@ -274,11 +329,11 @@ function issueNote(
     endEastM: fix.eastM,
     endNorthM: fix.northM,
     sagM: sagOf(track, anchor, fix, { midS: leg.startS + seconds / 2 }),
-    chained: anchor.noteNumber > 0 && anchor.noteNumber === newestNumber(log, selfIndex),
+    chained: anchor.noteNumber > 0 && anchor.noteNumber === last,
     fixSigmaM: fix.sigmaM,
-    skipped: memory.skip,
+    skipped: skip,
   };
-  memory.skip = 0;
+  memory.hasIssued = true;
   const note = roundedNote(raw);
   takeIntoMap(map, note);
   return note;

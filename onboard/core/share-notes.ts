@@ -25,6 +25,8 @@ const MARK_AHEAD_MAX = 32;
 export interface NoteSharing {
   readonly selfIndex: number;
   readonly fleetSize: number;
+  /** Notes come no faster than this. */
+  readonly noteEveryS: number;
   /** The last mark of each peer for each origin, peer-major; 0 until it says otherwise. */
   readonly marks: Int32Array;
   /** Time of the frame that said it, per peer and origin. */
@@ -33,11 +35,12 @@ export interface NoteSharing {
   readonly said: Uint8Array;
 }
 
-export function startNoteSharing(selfIndex: number, fleetSize: number): NoteSharing {
+export function startNoteSharing(selfIndex: number, fleetSize: number, noteEveryS: number): NoteSharing {
   assert(selfIndex >= 0 && selfIndex < fleetSize, 'a vehicle is of its fleet');
   return {
     selfIndex,
     fleetSize,
+    noteEveryS,
     marks: new Int32Array(fleetSize * fleetSize),
     markedAtS: new Float64Array(fleetSize * fleetSize).fill(NOTHING_SAID),
     said: new Uint8Array(fleetSize * NUMBERS),
@@ -73,8 +76,10 @@ export function hearHaves(sharing: NoteSharing, log: NoteLog, heard: { frame: Fr
     const at = frame.senderIndex * fleetSize + origin;
     if (!(frameAtS >= sharing.markedAtS[at]!)) continue;
     sharing.markedAtS[at] = frameAtS;
-    const low = frame.haves[offset]!;
-    sharing.marks[at] = unwrapMark(low, newestNumber(log, origin));
+    const newest = newestNumber(log, origin);
+    // After a restart with lost memory the own number is unknown; time bounds how many there can be.
+    const known = origin === sharing.selfIndex ? Math.max(newest, Math.floor(frameAtS / sharing.noteEveryS)) : newest;
+    sharing.marks[at] = unwrapMark(frame.haves[offset]!, known);
   }
   if (frame.note !== null) countSaid(sharing, frame.note);
 }

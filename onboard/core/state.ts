@@ -38,6 +38,7 @@ export interface State {
   readonly meanHere: Float64Array;
   readonly meanPoint: Float64Array;
   readonly bias: BiasAnswer;
+  readonly counts: { hasBegun: boolean };
   readonly guidanceIn: GuidanceInput;
   readonly guidanceOut: GuidanceOutput;
 }
@@ -76,7 +77,9 @@ export function start(mission: Mission): State {
     loop,
     estimator: startEstimator(mission),
     guidance: startGuidance(mission),
-    sharing: startNoteSharing(selfIndex, mission.fleet.length),
+    sharing: startNoteSharing(
+      selfIndex, mission.fleet.length, Math.max(mission.self.fixEvery_s, mission.onboard.noteLeast_s),
+    ),
     talk: startTalk(mission, selfIndex),
     table,
     here: noCurrent(),
@@ -84,6 +87,7 @@ export function start(mission: Mission): State {
     meanHere: new Float64Array(2),
     meanPoint: new Float64Array(2),
     bias: { compassBiasRad: 0, compassBiasSigmaRad: 0, logScale: 0, logScaleSigma: 0 },
+    counts: { hasBegun: false },
     guidanceIn: {
       atS: 0, tickS: mission.tick_s, eastM: 0, northM: 0, depthM: 0, positionSigmaM: 0, compassBiasRad: 0,
       logScale: 0, headingRad: 0, speedMps: 0, battery: 1, currentEastMps: 0, currentNorthMps: 0,

@@ -10,10 +10,13 @@ import { degFromRad, headingDegFromRad, radFromDeg } from '../../messages/angles
 import { AGENT_STATES, encodeFrame, hexFromBytes } from '../../messages/frame.ts';
 import type { Sense } from '../../messages/sense.ts';
 import type { Estimate, HeardFate, MapMessage, Steer } from '../../messages/steer.ts';
-import { biasNow, currentAt, currentMeanAt, reckonTick, takeNote, workEstimator } from './estimator.ts';
+import {
+  biasNow, currentAt, currentMeanAt, guessPosition, hearOwnNumber, isLost, reckonTick, startLost, takeNote, workEstimator,
+} from './estimator.ts';
 import { guide, hearPeer, isBatteryLow } from './guidance.ts';
 import { noteCount } from './note-log.ts';
-import { chooseNote, hearHaves, ownHaves } from './share-notes.ts';
+import { guessPlace } from './open-place.ts';
+import { chooseNote, hearHaves, ownHaves, ownNumberHeard } from './share-notes.ts';
 import { MAP_POINTS, type State } from './state.ts';
 import { frameTime, isTimeToSay, nextSequence, readHeard } from './talk.ts';
 
@@ -24,8 +27,10 @@ const SIGMA_HERE_TICKS = 15;
 
 /** Answers one sense. */
 export function step(state: State, sense: Sense): Steer {
+  if (!state.counts.hasBegun) begin(state, sense);
   const heard = hearFrames(state, sense);
   reckon(state, sense);
+  findItself(state, sense);
   workEstimator(state.estimator);
   const minute = isWholeMinute(state, sense.tick);
   renewPicture(state, sense, minute);
@@ -45,6 +50,12 @@ export function step(state: State, sense: Sense): Steer {
   };
 }
 
+/** The first sense: one that is not the run's first means a restart with lost memory. */
+function begin(state: State, sense: Sense): void {
+  state.counts.hasBegun = true;
+  if (sense.tick > 0) startLost(state.estimator);
+}
+
 function hearFrames(state: State, sense: Sense): HeardFate[] {
   const fates: HeardFate[] = [];
   for (const heard of sense.heard) {
@@ -54,6 +65,7 @@ function hearFrames(state: State, sense: Sense): HeardFate[] {
     hearPeer(state.guidance, reading.frame, heard.at_s);
     if (state.mission.sharing === 'solo') continue;
     hearHaves(state.sharing, state.estimator.log, reading);
+    hearOwnNumber(state.estimator, ownNumberHeard(state.sharing));
     if (reading.frame.note !== null) takeNote(state.estimator, reading.frame.note);
   }
   return fates;
@@ -67,6 +79,13 @@ function reckon(state: State, sense: Sense): void {
     speedMps: sense.speed_mps,
     fix: fix === null ? null : { atS: fix.at_s, eastM: fix.east_m, northM: fix.north_m, sigmaM: fix.sigma_m },
   });
+}
+
+/** After a start in the middle of a run: the one place of the pattern that nobody holds is likely its own. */
+function findItself(state: State, sense: Sense): void {
+  const { estimator, guidance, meanPoint } = state;
+  if (!isLost(estimator) || !guessPlace(guidance, sense.at_s, meanPoint)) return;
+  guessPosition(estimator, meanPoint[0]!, meanPoint[1]!);
 }
 
 function isWholeMinute(state: State, tick: number): boolean {
