@@ -33,8 +33,10 @@ export function commonSpeedMps(
   for (let point = 0; point < points; point++) {
     const courseRad = tangentRad(loop, point / points);
     const current = { eastMps: table.east[point]!, northMps: table.north[point]! };
-    fastest[point] = Math.max(CRAWL_MPS, groundSpeedMps(courseRad, range.maxMps * USABLE_SHARE, current));
-    slowest[point] = Math.min(fastest[point]!, Math.max(CRAWL_MPS, groundSpeedMps(courseRad, range.minMps, current)));
+    const fastMps = groundSpeedMps(courseRad, range.maxMps * USABLE_SHARE, current);
+    const slowMps = groundSpeedMps(courseRad, range.minMps, current);
+    fastest[point] = Math.max(CRAWL_MPS, fastMps);
+    slowest[point] = Math.min(fastest[point]!, Math.max(CRAWL_MPS, slowMps));
     least = Math.max(least, slowest[point]!);
     most = Math.min(most, fastest[point]!);
   }

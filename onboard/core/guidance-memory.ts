@@ -9,11 +9,11 @@ import type { Order } from '../../messages/sense.ts';
 import type { Reason } from '../../messages/steer.ts';
 import type { SpeedRange } from './common-speed.ts';
 import type { WaterOrder } from './course.ts';
-import { startTraffic, type Traffic } from './keep-clear.ts';
 import { homePoint, joiningDepthM } from './layers.ts';
 import { makeLoop, type Loop, type LoopPlace } from './loop.ts';
 import { startPattern, type Pattern } from './pattern.ts';
 import { startPeers, type Peers } from './peers.ts';
+import { startTraffic, type Traffic } from './traffic.ts';
 
 /** Caller-owned, renewed every tick. */
 export interface GuidanceInput {
@@ -65,8 +65,8 @@ export interface Memory {
   speedRenewedAtS: number;
   /** Time until the own place is met, while joining. */
   meetingS: number;
-  /** Whether the agent began on the loop at its depth, as after a restart. */
-  beganOnLoop: boolean;
+  /** Whether the agent began at the fleet's depth, as after a restart, and is on the way it was on then. */
+  beganDeep: boolean;
   /** Frames taken in when the claims were last looked at. */
   newsSeen: number;
   /** Time of the last change of state. */
@@ -105,13 +105,14 @@ export function startGuidance(mission: Mission): Guidance {
   assert(mission.offsets.length === fleet.length, 'the pattern has one place a vehicle');
   const loop = makeLoop(mission.loop);
   const range = { minMps: self.speedMin_mps, cruiseMps: self.cruise_mps, maxMps: self.speedMax_mps };
+  const middleMps = (range.minMps + range.maxMps) / 2;
   const home = homePoint(mission, selfIndex);
   return {
     mission,
     loop,
     range,
     peers: startPeers(selfIndex, fleet.length),
-    pattern: startPattern(mission.offsets, loop.lengthM, Math.min(range.cruiseMps, (range.minMps + range.maxMps) / 2)),
+    pattern: startPattern(mission.offsets, loop.lengthM, Math.min(range.cruiseMps, middleMps)),
     selfIndex,
     homeEastM: home.eastM,
     homeNorthM: home.northM,
@@ -121,10 +122,16 @@ export function startGuidance(mission: Mission): Guidance {
     point: new Float64Array(2),
     traffic: startTraffic(fleet.length),
     memory: {
-      state: 'waiting', reason: 'start', place: selfIndex, startedAtS: NOT_STARTED, speedRenewedAtS: NOT_STARTED,
-      meetingS: 0, beganOnLoop: false, newsSeen: 0, changedAtS: 0, mayDescend: false, batteryLow: false, driftMostMps: 0,
+      state: 'waiting', reason: 'start', place: selfIndex, startedAtS: NOT_STARTED,
+      speedRenewedAtS: NOT_STARTED, meetingS: 0, beganDeep: false, newsSeen: 0, changedAtS: 0,
+      mayDescend: false, batteryLow: false, driftMostMps: 0,
     },
   };
+}
+
+/** Whether the own position is known well enough to go anywhere by it. */
+export function isPlaced(guidance: Guidance, input: GuidanceInput): boolean {
+  return input.positionSigmaM <= guidance.mission.onboard.positionUncertain_m;
 }
 
 /** Distance to the vehicle's own point at the recovery place. */

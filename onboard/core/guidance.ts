@@ -6,12 +6,14 @@
 import type { Frame } from '../../messages/frame.ts';
 import type { Reason } from '../../messages/steer.ts';
 import { commonSpeedMps } from './common-speed.ts';
-import { NOT_STARTED, type Guidance, type GuidanceInput, type GuidanceOutput } from './guidance-memory.ts';
+import {
+  isPlaced, NOT_STARTED, type Guidance, type GuidanceInput, type GuidanceOutput,
+} from './guidance-memory.ts';
 import { nearestPlace } from './loop.ts';
 import { alignPattern, followFleet, movePattern, placePhase } from './pattern.ts';
 import { isHeard, takeFrame } from './peers.ts';
 import { steer } from './steering.ts';
-import { changeState, isAtWork } from './transitions.ts';
+import { changeState, isAtDepth } from './transitions.ts';
 
 export { startGuidance, type Guidance, type GuidanceInput, type GuidanceOutput } from './guidance-memory.ts';
 
@@ -32,7 +34,8 @@ export function guide(guidance: Guidance, input: GuidanceInput, out: GuidanceOut
   nearestPlace(guidance.loop, input.eastM, input.northM, at);
   if (memory.startedAtS === NOT_STARTED) {
     memory.startedAtS = input.atS;
-    memory.beganOnLoop = isAtWork(guidance, input);
+    memory.beganDeep = isAtDepth(guidance, input);
+    guidance.order.headingRad = input.headingRad - input.compassBiasRad;
   }
   renewSpeed(guidance, input);
   renewPattern(guidance, input);
@@ -83,10 +86,11 @@ function giveReasons(guidance: Guidance, input: GuidanceInput, reasons: Reason[]
   reasons.length = 0;
   reasons.push(memory.reason);
   if (order.overpowered) reasons.push('current-too-strong');
-  if (input.positionSigmaM > mission.onboard.positionUncertain_m) reasons.push('position-uncertain');
+  const isWaiting = memory.state === 'waiting';
+  if (!isPlaced(guidance, input)) reasons.push(isWaiting ? 'no-fix-yet' : 'position-uncertain');
   if (input.mapStale) reasons.push('map-stale');
   if (memory.batteryLow && memory.reason !== 'battery-low') reasons.push('battery-low');
-  if (memory.state !== 'waiting' && isAlone(guidance, input)) reasons.push('alone');
+  if (!isWaiting && isAlone(guidance, input)) reasons.push('alone');
   const { centre, radius_m: radiusM } = mission.keepIn;
   const east = input.eastM - centre.east_m;
   const north = input.northM - centre.north_m;

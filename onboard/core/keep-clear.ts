@@ -11,6 +11,7 @@ import { joiningDepthM } from './layers.ts';
 import { pointAt, tangentRad } from './loop.ts';
 import { turnsPerS } from './pattern.ts';
 import { isHeard, peerPhase, peerState } from './peers.ts';
+import type { Traffic } from './traffic.ts';
 
 /** Closest approach that is far enough: 30 m, and what may be wrong with a prediction a minute old. */
 const CLEAR_M = 90;
@@ -18,24 +19,11 @@ const CLEAR_M = 90;
 const HORIZON_S = 240;
 const SAME_LAYER_M = 5;
 const MEETING_ROUNDS = 6;
-/** Turns off the straight course, with the share of the way from least to greatest speed; the least change first. */
+/** Turns off the straight course, each with a speed: 0 the least, 1 the greatest. The least change first. */
 const CHOICES: readonly (readonly [number, number])[] = [
-  [0, 1], [0.35, 1], [-0.35, 1], [0, 0], [0.7, 1], [-0.7, 1], [0.35, 0], [-0.35, 0], [1.2, 1], [-1.2, 1], [1.2, 0], [-1.2, 0],
+  [0, 1], [0.35, 1], [-0.35, 1], [0, 0], [0.7, 1], [-0.7, 1],
+  [0.35, 0], [-0.35, 0], [1.2, 1], [-1.2, 1], [1.2, 0], [-1.2, 0],
 ];
-
-/** Where other vehicles of the layer are now and how they move over ground. Sized at start. */
-export interface Traffic {
-  count: number;
-  readonly eastM: Float64Array;
-  readonly northM: Float64Array;
-  readonly eastMps: Float64Array;
-  readonly northMps: Float64Array;
-}
-
-export function startTraffic(fleetSize: number): Traffic {
-  const make = (): Float64Array => new Float64Array(fleetSize);
-  return { count: 0, eastM: make(), northM: make(), eastMps: make(), northMps: make() };
-}
 
 /** Turns the joining order in `guidance.order` aside if it would come too near to another of the layer. */
 export function keepClear(guidance: Guidance, input: GuidanceInput): void {

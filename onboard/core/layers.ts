@@ -20,7 +20,7 @@ export function joiningDepthM(depthM: number, vehicleIndex: number): number {
 }
 
 /** A vehicle's own point at the recovery place. */
-export function homePoint(mission: Mission, vehicleIndex: number): { readonly eastM: number; readonly northM: number } {
+export function homePoint(mission: Mission, vehicleIndex: number): { eastM: number; northM: number } {
   const count = mission.fleet.length;
   const ringM = count === 1 ? 0 : HOME_APART_M / (2 * Math.sin(Math.PI / count));
   const bearingRad = (2 * Math.PI * vehicleIndex) / count;

@@ -66,11 +66,14 @@ export interface FleetNow {
 
 /** Phase by now of a peer that holds its place, or −1 for any other. */
 function holderPhase(pattern: Pattern, peers: Peers, peer: number, now: FleetNow): number {
-  if (peer === peers.selfIndex || !isHeard(peers, peer, now) || peerState(peers, peer) !== 'holding') return -1;
-  return peerPhase(peers, peer, now.atS, turnsPerS(pattern));
+  if (peer === peers.selfIndex || !isHeard(peers, peer, now)) return -1;
+  return peerState(peers, peer) === 'holding' ? peerPhase(peers, peer, now.atS, turnsPerS(pattern)) : -1;
 }
 
-/** Draws the pattern by `share` toward the vehicles that hold their places; `ownTurns` is how far ahead of its place this one is. */
+/**
+ * Draws the pattern by `share` toward the vehicles that hold their places; `ownTurns` is how far ahead of
+ * its place this one is, null if it does not hold one.
+ */
 export function followFleet(
   pattern: Pattern, peers: Peers, now: FleetNow & { readonly share: number; readonly ownTurns: number | null },
 ): void {

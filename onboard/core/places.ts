@@ -112,8 +112,8 @@ export function isTaken(question: PlaceQuestion, place: number, holding: boolean
     if (!holding) {
       if (peerHolds || peer < peers.selfIndex) return true;
     } else if (peerHolds && peer < peers.selfIndex) {
-      const offTurns = Math.abs(wrapHalf(peerPhase(peers, peer, question.atS, turnsPerS(pattern)) - question.ownPhase));
-      if (offTurns < BESIDE_SHARE / pattern.offsets.length) return true;
+      const phase = peerPhase(peers, peer, question.atS, turnsPerS(pattern));
+      if (Math.abs(wrapHalf(phase - question.ownPhase)) < BESIDE_SHARE / pattern.offsets.length) return true;
     }
   }
   return false;

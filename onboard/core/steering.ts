@@ -10,11 +10,13 @@
 import { assert, unreachable } from '../../messages/assert.ts';
 import { wrapHalf, wrapRad } from './angle.ts';
 import { groundSpeedMps, headingForCourse, orderForGround } from './course.ts';
-import { distanceHomeM, type Guidance, type GuidanceInput, type GuidanceOutput } from './guidance-memory.ts';
+import {
+  distanceHomeM, isPlaced, type Guidance, type GuidanceInput, type GuidanceOutput,
+} from './guidance-memory.ts';
 import { keepClear } from './keep-clear.ts';
-import { pointAt, tangentRad } from './loop.ts';
+import { curvaturePerM, pointAt, tangentRad } from './loop.ts';
 import { placePhase, turnsPerS } from './pattern.ts';
-import { HOME_REACHED_M } from './transitions.ts';
+import { HOME_REACHED_M, isOnStation } from './transitions.ts';
 
 /** Rounds of the meeting-point iteration a tick; it goes on from the tick before. */
 const MEETING_ROUNDS = 3;
@@ -25,9 +27,8 @@ export function steer(guidance: Guidance, input: GuidanceInput, out: GuidanceOut
   order.overpowered = false;
   switch (memory.state) {
     case 'waiting':
-      if (memory.beganOnLoop) follow(guidance, input, 0);
-      else stop(guidance, input);
-      out.depthM = memory.beganOnLoop ? mission.depth_m : guidance.joiningDepthM;
+      wait(guidance, input);
+      out.depthM = waitingDepthM(guidance, input);
       break;
     case 'joining':
       join(guidance, input);
@@ -44,7 +45,7 @@ export function steer(guidance: Guidance, input: GuidanceInput, out: GuidanceOut
       break;
     case 'surfacing':
       // Having arrived, it stays by its point; an order to surface stops it where it is.
-      if (memory.reason === 'arrived' && distanceHomeM(guidance, input) > HOME_REACHED_M) goHome(guidance, input);
+      if (memory.reason === 'arrived') stayNearHome(guidance, input);
       else stop(guidance, input);
       out.depthM = 0;
       break;
@@ -57,13 +58,35 @@ export function steer(guidance: Guidance, input: GuidanceInput, out: GuidanceOut
   assert(out.speedMps >= 0 && out.speedMps < Infinity, 'an ordered speed is finite and not negative');
 }
 
+/** At work but without a place it goes on round, by heading alone if it knows not where; else it drifts. */
+function wait(guidance: Guidance, input: GuidanceInput): void {
+  const { order, pattern, loop } = guidance;
+  if (!isOnStation(guidance, input)) return stop(guidance, input);
+  if (isPlaced(guidance, input)) return follow(guidance, input, 0);
+  order.headingRad = wrapRad(order.headingRad + curvaturePerM(loop) * pattern.speedMps * input.tickS);
+  order.speedMps = pattern.speedMps;
+}
+
+/** Where fixes come only at the surface, a vehicle that needs one goes there. */
+function waitingDepthM(guidance: Guidance, input: GuidanceInput): number {
+  const { mission } = guidance;
+  if (mission.self.fixFrom === 'surface' && !isPlaced(guidance, input)) return 0;
+  return isOnStation(guidance, input) ? mission.depth_m : guidance.joiningDepthM;
+}
+
 function stop(guidance: Guidance, input: GuidanceInput): void {
   guidance.order.headingRad = wrapRad(input.headingRad - input.compassBiasRad);
   guidance.order.speedMps = 0;
 }
 
 function goHome(guidance: Guidance, input: GuidanceInput): void {
-  goTo(guidance, input, { eastM: guidance.homeEastM, northM: guidance.homeNorthM, speedMps: guidance.range.cruiseMps });
+  const { homeEastM: eastM, homeNorthM: northM, range } = guidance;
+  goTo(guidance, input, { eastM, northM, speedMps: range.cruiseMps });
+}
+
+function stayNearHome(guidance: Guidance, input: GuidanceInput): void {
+  if (distanceHomeM(guidance, input) > HOME_REACHED_M) goHome(guidance, input);
+  else stop(guidance, input);
 }
 
 /** Heads for a point at a speed through the water; flat out where that makes no way. */
@@ -87,8 +110,8 @@ function join(guidance: Guidance, input: GuidanceInput): void {
     pointAt(loop, placePhase(pattern, memory.place) + turnsPerS(pattern) * memory.meetingS, point);
     const east = point[0]! - input.eastM;
     const north = point[1]! - input.northM;
-    const groundMps = Math.max(range.minMps / 2, groundSpeedMps(Math.atan2(east, north), range.maxMps, current));
-    memory.meetingS = Math.sqrt(east * east + north * north) / groundMps;
+    const groundMps = groundSpeedMps(Math.atan2(east, north), range.maxMps, current);
+    memory.meetingS = Math.sqrt(east * east + north * north) / Math.max(range.minMps / 2, groundMps);
   }
   goTo(guidance, input, { eastM: point[0]!, northM: point[1]!, speedMps: range.maxMps });
 }
@@ -105,9 +128,11 @@ function correctionMps(guidance: Guidance): number {
 function follow(guidance: Guidance, input: GuidanceInput, correction: number): void {
   const { pattern, loop, at, range, order, mission } = guidance;
   const aheadTurns = turnsPerS(pattern) * input.tickS;
-  const courseRad = tangentRad(loop, at.phase + aheadTurns) - Math.atan(at.crossTrackM / mission.onboard.converge_m);
+  const backRad = Math.atan(at.crossTrackM / mission.onboard.converge_m);
+  const courseRad = tangentRad(loop, at.phase + aheadTurns) - backRad;
+  const groundMps = Math.max(0, pattern.speedMps + correction);
   orderForGround(
-    { courseRad, groundMps: Math.max(0, pattern.speedMps + correction), minMps: range.minMps, maxMps: range.maxMps },
+    { courseRad, groundMps, minMps: range.minMps, maxMps: range.maxMps },
     { eastMps: input.currentEastMps, northMps: input.currentNorthMps },
     order,
   );

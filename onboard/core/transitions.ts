@@ -4,7 +4,9 @@
  */
 import { wrapHalf } from './angle.ts';
 import { mustTurnHome } from './energy.ts';
-import { distanceHomeM, type Guidance, type GuidanceInput } from './guidance-memory.ts';
+import {
+  distanceHomeM, isPlaced, type Guidance, type GuidanceInput, type Memory,
+} from './guidance-memory.ts';
 import { placePhase } from './pattern.ts';
 import { isHeard, peerState } from './peers.ts';
 import { choosePlace, freePlace, isTaken, type PlaceQuestion } from './places.ts';
@@ -13,72 +15,80 @@ import { moveOn, type Event } from './states.ts';
 /** Home, and at the layer of joining, is within so much. */
 export const HOME_REACHED_M = 30;
 const DEPTH_REACHED_M = 1;
-/** A vehicle that begins this near the line's depth, and on the line, was at work there. */
-const AT_WORK_M = 3;
+/** A vehicle that begins this near the line's depth was at work there. */
+const AT_DEPTH_M = 3;
 /** Rounds of slots that a vehicle listens for the fleet before it goes. */
 const LISTEN_ROUNDS = 4;
 /** A vehicle that holds waits no longer than this for the others to be in their places. */
 const LAYER_WAIT_S = 1200;
 
-/** Whether the vehicle is on the line at the fleet's depth. */
-export function isAtWork(guidance: Guidance, input: GuidanceInput): boolean {
-  const { mission, at } = guidance;
-  return Math.abs(at.crossTrackM) < mission.onboard.takeHold_m && Math.abs(input.depthM - mission.depth_m) < AT_WORK_M;
+/** Whether the vehicle is at the fleet's depth. */
+export function isAtDepth(guidance: Guidance, input: GuidanceInput): boolean {
+  return Math.abs(input.depthM - guidance.mission.depth_m) < AT_DEPTH_M;
+}
+
+/** Whether it began at work and is, as far as it knows, still near the line. */
+export function isOnStation(guidance: Guidance, input: GuidanceInput): boolean {
+  const { memory, at, mission } = guidance;
+  if (!memory.beganDeep) return false;
+  return !isPlaced(guidance, input) || Math.abs(at.crossTrackM) < mission.onboard.letGo_m;
 }
 
 /** Applies whatever has happened by this tick. */
 export function changeState(guidance: Guidance, input: GuidanceInput): void {
-  const { memory, mission } = guidance;
+  const { memory, mission, at } = guidance;
   memory.batteryLow = mustTurnHome(mission.self, input.battery, {
     distanceM: distanceHomeM(guidance, input),
     driftMps: memory.driftMostMps,
     reserve: mission.onboard.batteryReserve,
   });
   for (const order of input.orders) {
-    apply(guidance, order === 'surface' ? 'order-surface' : order === 'home' ? 'order-home' : 'order-hold', input.atS);
+    const event = order === 'surface' ? 'order-surface' : order === 'home' ? 'order-home' : 'order-hold';
+    apply(memory, event, input.atS);
   }
-  if (memory.batteryLow) apply(guidance, 'battery-low', input.atS);
+  if (memory.batteryLow) apply(memory, 'battery-low', input.atS);
   switch (memory.state) {
     case 'waiting':
       if (isReady(guidance, input)) makeReady(guidance, input);
       return;
     case 'joining':
       keepPlace(guidance, input);
-      if (isInPlace(guidance)) apply(guidance, 'in-place', input.atS);
+      if (isInPlace(guidance)) apply(memory, 'in-place', input.atS);
       return;
     case 'holding':
-      if (Math.abs(guidance.at.crossTrackM) > mission.onboard.letGo_m) apply(guidance, 'off-the-loop', input.atS);
+      if (Math.abs(at.crossTrackM) > mission.onboard.letGo_m) apply(memory, 'off-the-loop', input.atS);
       else keepPlace(guidance, input);
       memory.mayDescend ||= isWayDownClear(guidance, input);
       return;
     case 'homing':
-      if (distanceHomeM(guidance, input) < HOME_REACHED_M) apply(guidance, 'arrived', input.atS);
+      if (distanceHomeM(guidance, input) < HOME_REACHED_M) apply(memory, 'arrived', input.atS);
       return;
     case 'surfacing':
       return;
   }
 }
 
-function apply(guidance: Guidance, event: Event, atS: number): void {
-  const { memory } = guidance;
+function apply(memory: Memory, event: Event, atS: number): void {
   const move = moveOn(memory.state, event);
   if (move === null) return;
   memory.state = move.to;
   memory.reason = move.reason;
   memory.meetingS = 0;
   memory.changedAtS = atS;
-  memory.mayDescend = memory.beganOnLoop && event === 'in-place';
-  memory.beganOnLoop &&= event === 'ready';
+  memory.mayDescend = memory.beganDeep && event === 'in-place';
+  memory.beganDeep &&= event === 'ready';
 }
 
-/** Ready to join: at the own layer, and every peer was heard or some rounds of slots have gone by. */
+/** Ready to join: it knows its place, is in its layer, and has heard every peer or listened for some rounds. */
 function isReady(guidance: Guidance, input: GuidanceInput): boolean {
+  if (!isPlaced(guidance, input)) return false;
   const { mission, memory } = guidance;
   const waitedS = input.atS - memory.startedAtS;
-  const roundS = mission.fleet.length * mission.modem.slot_s;
+  const listenS = LISTEN_ROUNDS * mission.fleet.length * mission.modem.slot_s;
   const diveS = (2 * mission.depth_m) / mission.self.climb_mps;
-  const isDeep = memory.beganOnLoop || Math.abs(input.depthM - guidance.joiningDepthM) < DEPTH_REACHED_M || waitedS > diveS;
-  return isDeep && (waitedS >= LISTEN_ROUNDS * roundS + input.tickS || areAllHeard(guidance, input, LISTEN_ROUNDS * roundS));
+  const isInLayer = Math.abs(input.depthM - guidance.joiningDepthM) < DEPTH_REACHED_M;
+  const isDeep = isOnStation(guidance, input) || isInLayer || waitedS > diveS;
+  return isDeep && (waitedS >= listenS + input.tickS || areAllHeard(guidance, input, listenS));
 }
 
 function areAllHeard(guidance: Guidance, input: GuidanceInput, silenceS: number): boolean {
@@ -93,8 +103,9 @@ function areAllHeard(guidance: Guidance, input: GuidanceInput, silenceS: number)
 function makeReady(guidance: Guidance, input: GuidanceInput): void {
   const question = questionOf(guidance, input);
   const place = choosePlace(question);
-  guidance.memory.place = isTaken(question, place, false) ? freePlace(question, place) : place;
-  apply(guidance, 'ready', input.atS);
+  const { memory } = guidance;
+  memory.place = isTaken(question, place, false) ? freePlace(question, place) : place;
+  apply(memory, 'ready', input.atS);
 }
 
 function questionOf(guidance: Guidance, input: GuidanceInput): PlaceQuestion {
@@ -120,10 +131,10 @@ function keepPlace(guidance: Guidance, input: GuidanceInput): void {
   const place = freePlace(question, memory.place);
   if (place === memory.place) return;
   memory.place = place;
-  if (isHolding) apply(guidance, 'place-taken', input.atS);
+  if (isHolding) apply(memory, 'place-taken', input.atS);
 }
 
-/** Whether the whole fleet is heard and none of it is on its way to a place; or that was waited for long enough. */
+/** Whether the whole fleet is heard and none of it is on its way; or that was waited for long enough. */
 function isWayDownClear(guidance: Guidance, input: GuidanceInput): boolean {
   const { peers, mission, memory } = guidance;
   if (input.atS - memory.changedAtS > LAYER_WAIT_S) return true;

@@ -27,7 +27,7 @@ export interface Scene {
   readonly currentErrorMps?: number;
   readonly positionErrorM?: number;
   readonly starts?: (index: number) => { readonly eastM: number; readonly northM: number };
-  /** Tick at which a vehicle begins to exist, or is started anew without memory. */
+  /** Tick at which a vehicle begins to exist; or is started anew without memory, lost until its next fix. */
   readonly beginsAtS?: (index: number) => number;
   readonly restarts?: readonly { readonly index: number; readonly atS: number }[];
   readonly ordersAt?: (index: number, timeS: number) => readonly Order[];
@@ -52,6 +52,7 @@ export interface Vessel {
   speedMps: number;
   battery: number;
   begun: boolean;
+  lostUntilS: number;
   sequence: number;
 }
 
@@ -67,6 +68,7 @@ export interface Result {
 
 const TURN = 2 * Math.PI;
 const SLOT_S = 4;
+const FIX_EVERY_S = 300;
 
 /** A number in [0, 1) for a seed and three counts (integer mixing after Steele, Lea and Flood 2014). */
 export function drawAt(seed: number, a: number, b: number, c: number): number {
@@ -116,7 +118,7 @@ function launch(scene: Scene, index: number): Vessel {
       currentSigmaMps: 0.01, mapStale: false, orders: [],
     },
     out: { headingRad: 0, speedMps: 0, depthM: 0, state: 'waiting', reasons: [], phase: 0 },
-    eastM: start.eastM, northM: start.northM, depthM: 0, headingRad: 0.7, speedMps: 0, battery: 1, begun: false, sequence: 0,
+    eastM: start.eastM, northM: start.northM, depthM: 0, headingRad: 0.7, speedMps: 0, battery: 1, begun: false, lostUntilS: 0, sequence: 0,
   };
 }
 
@@ -133,6 +135,12 @@ function perceive(scene: Scene, vessel: Vessel, timeS: number): void {
   input.atS = timeS;
   input.eastM = vessel.eastM + (scene.positionErrorM ?? 0) * smooth(vessel, 0, timeS);
   input.northM = vessel.northM + (scene.positionErrorM ?? 0) * smooth(vessel, 1, timeS);
+  input.positionSigmaM = 3;
+  if (timeS < vessel.lostUntilS) {
+    input.positionSigmaM = 1000;
+    input.eastM = mission.self.start.east_m;
+    input.northM = mission.self.start.north_m;
+  }
   input.depthM = vessel.depthM;
   input.compassBiasRad = vessel.biasRad;
   input.logScale = vessel.logScale;
@@ -278,6 +286,7 @@ export function runScene(scene: Scene): Result {
       vessel.begun ||= timeS >= (scene.beginsAtS?.(vessel.index) ?? 0);
       if (scene.restarts?.some((one) => one.index === vessel.index && one.atS === timeS) === true) {
         vessel.guidance = startGuidance(vessel.guidance.mission);
+        vessel.lostUntilS = FIX_EVERY_S * Math.ceil(timeS / FIX_EVERY_S);
       }
       if (!vessel.begun) continue;
       perceive(scene, vessel, timeS);
