@@ -63,6 +63,8 @@ export interface Memory {
   place: number;
   startedAtS: number;
   speedRenewedAtS: number;
+  /** Time to which the pattern has followed the fleet. */
+  followedAtS: number;
   /** Time until the own place is met, while joining. */
   meetingS: number;
   /** Whether the agent began at the fleet's depth, as after a restart, and is on the way it was on then. */
@@ -123,7 +125,7 @@ export function startGuidance(mission: Mission): Guidance {
     traffic: startTraffic(fleet.length),
     memory: {
       state: 'waiting', reason: 'start', place: selfIndex, startedAtS: NOT_STARTED,
-      speedRenewedAtS: NOT_STARTED, meetingS: 0, beganDeep: false, newsSeen: 0, changedAtS: 0,
+      speedRenewedAtS: NOT_STARTED, followedAtS: 0, meetingS: 0, beganDeep: false, newsSeen: 0, changedAtS: 0,
       mayDescend: false, batteryLow: false, driftMostMps: 0,
     },
   };

@@ -18,6 +18,8 @@ import { changeState, isAtDepth } from './transitions.ts';
 export { startGuidance, type Guidance, type GuidanceInput, type GuidanceOutput } from './guidance-memory.ts';
 
 const RENEW_SPEED_S = 60;
+/** The pattern follows the fleet in steps of at least this. */
+const FOLLOW_S = 10;
 
 /** Takes in what a peer says of itself; order and repetition do not matter. */
 export function hearPeer(guidance: Guidance, frame: Frame, heardAtS: number): void {
@@ -50,16 +52,18 @@ export function guide(guidance: Guidance, input: GuidanceInput, out: GuidanceOut
 function renewPattern(guidance: Guidance, input: GuidanceInput): void {
   const { memory, pattern, peers, at, mission } = guidance;
   const { peerSilence_s: silenceS, patternFollow_s: followS } = mission.onboard;
-  const stepS = input.atS - pattern.atS;
   movePattern(pattern, input.atS);
-  const now = { atS: input.atS, silenceS };
   if (memory.state === 'waiting') {
-    if (memory.newsSeen !== peers.news) alignPattern(pattern, peers, now);
+    if (memory.newsSeen !== peers.news) alignPattern(pattern, peers, { atS: input.atS, silenceS });
     memory.newsSeen = peers.news;
+    memory.followedAtS = input.atS;
     return;
   }
+  const sinceS = input.atS - memory.followedAtS;
+  if (sinceS < FOLLOW_S) return;
+  memory.followedAtS = input.atS;
   const ownTurns = memory.state === 'holding' ? at.phase - placePhase(pattern, memory.place) : null;
-  followFleet(pattern, peers, { ...now, share: Math.min(1, Math.max(0, stepS) / followS), ownTurns });
+  followFleet(pattern, peers, { atS: input.atS, silenceS, share: Math.min(1, sinceS / followS), ownTurns });
 }
 
 /** Renews the common speed from the currents along the loop, slowly. */
