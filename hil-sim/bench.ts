@@ -1,21 +1,23 @@
 /** `drywake bench`: a trial from its file to a verdict, a run folder and an exit status. */
 import { basename, extname, join } from 'node:path';
-import type { Mission } from '../messages/mission.ts';
 import { benchNameFrom, isBenchName } from '../messages/topics.ts';
+import { complain } from './complain.ts';
 import { startProgress } from './progress.ts';
+import { withAgents } from './road.ts';
 import { FolderProblem, openRunFolder, type RunFolder } from './run/folder.ts';
 import { finishMeasures } from './run/measure-report.ts';
 import { startMeasures, takeTick } from './run/measure.ts';
-import { buildOutcome, outcomeLines } from './run/outcome.ts';
+import { buildOutcome, outcomeLines, type Outcome } from './run/outcome.ts';
 import { renderReport } from './run/report.ts';
-import { runTrial, type Agents, type RunResult, type Watcher } from './run/run-trial.ts';
+import { runTrial, type Watcher } from './run/run-trial.ts';
+import { seedLine, spreadLines, yardstickLines } from './run/spread.ts';
 import { startSea } from './sea/advance.ts';
 import { formatProblem, loadTrial } from './trial/load.ts';
-import { missionsOf } from './trial/missions.ts';
 import { seaPlan } from './trial/plan.ts';
 import { resolvedYaml } from './trial/resolve.ts';
 import type { Trial } from './trial/schema.ts';
 import { version } from './version.ts';
+import { runYardsticks } from './yardsticks.ts';
 
 export interface BenchOptions {
   readonly inProcess?: boolean;
@@ -24,13 +26,11 @@ export interface BenchOptions {
   readonly set: readonly string[];
   readonly bench?: string;
   readonly json?: boolean;
+  readonly seeds?: readonly number[];
+  readonly yardsticks?: boolean;
 }
 
 const EXIT = { met: 0, unmet: 1, usage: 2, failed: 3 } as const;
-
-function complain(lines: readonly string[]): void {
-  for (const line of lines) process.stderr.write(`${line}\n`);
-}
 
 /** A folder of its own for this run: the trial's name, the seed, and when it began. */
 function newRunFolder(name: string, seed: number): string {
@@ -47,29 +47,58 @@ function repeatCommand(trialPath: string, options: BenchOptions, trial: Trial): 
 
 /** Runs the command and answers the exit status. */
 export async function runBench(trialPath: string, options: BenchOptions): Promise<number> {
-  const sets = options.set;
-  const loaded = loadTrial(trialPath, options.seed === undefined ? { sets } : { sets, seed: options.seed });
+  const seeds = options.seeds ?? [options.seed];
+  const loaded = loadTrial(trialPath, seeds[0] === undefined ? { sets: options.set } : { sets: options.set, seed: seeds[0] });
   if (!loaded.ok) {
     complain(loaded.problems.map(formatProblem));
     complain([`${loaded.problems.length} problem${loaded.problems.length === 1 ? '' : 's'}; nothing was run`]);
     return EXIT.usage;
   }
-  const { trial } = loaded;
   const name = benchNameFrom(basename(trialPath, extname(trialPath)));
   const bench = options.bench ?? name;
   if (!isBenchName(bench)) {
     complain([`--bench ${bench}: must be lower-case letters, digits, - or _, 64 at most`]);
     return EXIT.usage;
   }
-  let folder: RunFolder;
+  const outcomes: Outcome[] = [];
+  const reports: string[] = [];
+  for (const seed of seeds) {
+    const trial = seed === undefined ? loaded.trial : { ...loaded.trial, seed };
+    const path = options.out ?? newRunFolder(name, trial.seed);
+    const folder = openFolder(options.seeds === undefined ? path : join(path, `seed-${trial.seed}`), trial);
+    if (folder === null) return EXIT.usage;
+    const outcome = await runInFolder({ trial, folder, bench, options, repeat: repeatCommand(trialPath, options, trial) });
+    if (outcome === null) return EXIT.failed;
+    outcomes.push(outcome);
+    reports.push(join(folder.path, 'report.html'));
+    if (options.seeds !== undefined && options.json !== true) process.stdout.write(`${seedLine(outcome)}\n`);
+  }
+  print(outcomes, options);
+  if (options.json !== true) process.stdout.write(`\n${reports.map((report) => `Report: ${report}\n`).join('')}`);
+  return outcomes.every(({ verdict }) => verdict === 'pass') ? EXIT.met : EXIT.unmet;
+}
+
+function openFolder(path: string, trial: Trial): RunFolder | null {
   try {
-    folder = openRunFolder(options.out ?? newRunFolder(name, trial.seed), trial, resolvedYaml(trial));
+    return openRunFolder(path, trial, resolvedYaml(trial));
   } catch (error) {
     if (!(error instanceof FolderProblem)) throw error;
     complain([error.message]);
-    return EXIT.usage;
+    return null;
   }
-  return await runInFolder({ trial, folder, bench, options, repeat: repeatCommand(trialPath, options, trial) });
+}
+
+/** The outcome of one run as it stands in its folder, or the spread over seeds. */
+function print(outcomes: readonly Outcome[], options: BenchOptions): void {
+  const [first] = outcomes;
+  if (first === undefined) return;
+  if (options.json === true) {
+    process.stdout.write(`${JSON.stringify(options.seeds === undefined ? first : outcomes, null, 2)}\n`);
+  } else if (options.seeds !== undefined) {
+    process.stdout.write(`${spreadLines(outcomes).join('\n')}\n`);
+  } else {
+    process.stdout.write(`${[...outcomeLines(first), ...yardstickLines(first)].join('\n')}\n`);
+  }
 }
 
 interface Job {
@@ -80,7 +109,8 @@ interface Job {
   readonly repeat: string;
 }
 
-async function runInFolder(job: Job): Promise<number> {
+/** One run to its outcome, written to its folder; null if the bench failed. */
+async function runInFolder(job: Job): Promise<Outcome | null> {
   const { trial, folder, options } = job;
   const sea = startSea(seaPlan(trial));
   const measures = startMeasures(trial, sea.currentAt);
@@ -97,58 +127,14 @@ async function runInFolder(job: Job): Promise<number> {
     await folder.abandon();
     const who = result.vehicle === null ? '' : ` (vehicle ${result.vehicle})`;
     complain([`the bench failed at tick ${result.tick}${who}: ${result.reason}`, `${folder.path} is readable to there`]);
-    return EXIT.failed;
+    return null;
   }
   const report = finishMeasures(measures);
+  const yardsticks = options.yardsticks === true ? await runYardsticks(trial) : undefined;
   const outcome = buildOutcome({
     trial, report, repeat: job.repeat, digest: result.digest, ticks: result.ticks, wall_s: result.wallS,
-    version: version(), node: process.version,
+    version: version(), node: process.version, ...(yardsticks === undefined ? {} : { yardsticks }),
   });
   await folder.close(outcome, renderReport({ trial, outcome, report }));
-  if (options.json === true) process.stdout.write(`${JSON.stringify(outcome, null, 2)}\n`);
-  else process.stdout.write(`${[...outcomeLines(outcome), '', `Report: ${join(folder.path, 'report.html')}`].join('\n')}\n`);
-  return outcome.verdict === 'pass' ? EXIT.met : EXIT.unmet;
-}
-
-/** Runs with agents in process or as processes of their own; they are gone when this returns. */
-async function withAgents(
-  job: Job, run: (agents: Agents, signal: AbortSignal) => Promise<RunResult>,
-): Promise<RunResult> {
-  const missions = missionsOf(job.trial);
-  const stop = new AbortController();
-  const onSignal = (): void => { stop.abort(); };
-  process.once('SIGINT', onSignal).once('SIGTERM', onSignal);
-  try {
-    if (job.options.inProcess === true) {
-      const { inProcessAgents } = await import('./run/in-process.ts');
-      return await run(inProcessAgents(missions), stop.signal);
-    }
-    return await withProcesses(job, missions, (agents) => run(agents, stop.signal), stop.signal);
-  } finally {
-    process.removeListener('SIGINT', onSignal).removeListener('SIGTERM', onSignal);
-  }
-}
-
-async function withProcesses(
-  job: Job, missions: readonly Mission[], run: (agents: Agents) => Promise<RunResult>, signal: AbortSignal,
-): Promise<RunResult> {
-  const [{ startBroker }, { AgentTrouble, processAgents }] = await Promise.all([
-    import('./shell/broker.ts'), import('./run/processes.ts'),
-  ]);
-  const bus = await startBroker();
-  try {
-    const agents = await processAgents({
-      bus, bench: job.bench, missions, signal, onLine: (vehicle, line) => complain([`${vehicle}: ${line}`]),
-    });
-    try {
-      return await run(agents);
-    } finally {
-      await agents.close();
-    }
-  } catch (error) {
-    if (!(error instanceof AgentTrouble)) throw error;
-    return { ok: false, reason: error.message, vehicle: error.vehicle, tick: 0, wallS: 0 };
-  } finally {
-    await bus.close();
-  }
+  return outcome;
 }

@@ -19,7 +19,7 @@ const NOT_BUILT_COMMANDS: Record<string, string> = {
 };
 
 const NOT_BUILT_BENCH_OPTIONS = [
-  '--pace <factor>', '--broker <url>', '--seeds <range>', '--yardsticks', '--compare <what>', '--against <run>',
+  '--pace <factor>', '--broker <url>', '--compare <what>', '--against <run>',
   '--watch', '--leave <name>', '--restart', '--explain <what>',
 ];
 
@@ -29,6 +29,15 @@ function seedNumber(text: string): number {
     throw new InvalidArgumentError('a seed is a whole number from 0 to 4294967295.');
   }
   return seed;
+}
+
+/** `1..10`, or `3,5,8`. */
+function seedRange(text: string): number[] {
+  const range = /^(\d+)\.\.(\d+)$/.exec(text);
+  if (range === null) return text.split(',').map(seedNumber);
+  const [first, last] = [seedNumber(range[1]!), seedNumber(range[2]!)];
+  if (last < first || last - first >= 1000) throw new InvalidArgumentError('a range runs upward, over 1000 seeds at most.');
+  return Array.from({ length: last - first + 1 }, (_, index) => first + index);
 }
 
 function refuse(what: string): never {
@@ -51,6 +60,8 @@ const bench = program
   .option('--in-process', 'the same run without sockets or processes; same digest, faster')
   .option('--out <dir>', 'run folder (default: a new folder under runs/)')
   .option('--seed <n>', 'another seed than the trial\'s', seedNumber)
+  .option('--seeds <range>', 'several seeds, 1..10 or 3,5,8: a line each, and the spread', seedRange)
+  .option('--yardsticks', 'beside the run: every note shared at once (central), and the true current given (known)')
   .option('--set <path=value>', 'change a key of the trial, e.g. mission.sharing=solo; repeatable',
     (value: string, earlier: string[]) => [...earlier, value], [] as string[])
   .option('--bench <name>', 'name of the bench in topics (default: the trial\'s file name)')

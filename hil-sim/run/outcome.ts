@@ -4,7 +4,7 @@ import type { Trial } from '../trial/schema.ts';
 import { clock, figure, marginFigure } from './figures.ts';
 import { isLeast, judgeLimits, marginShare, verdictOf, type LimitResult } from './limits.ts';
 import type { MeasureReport } from './measure-report.ts';
-import { MEASURE_NAMES, type MeasureName } from './measures.ts';
+import { MEASURE_NAMES, type MeasureName, type MeasureValues } from './measures.ts';
 
 const seconds = z.number().nullable();
 
@@ -58,6 +58,8 @@ export interface OutcomeInput {
   readonly wall_s: number;
   readonly version: string;
   readonly node: string;
+  /** The same seed with every note shared at once, and with the true current given. */
+  readonly yardsticks?: { readonly central: MeasureValues; readonly known: MeasureValues };
   /** The command that runs the same again. */
   readonly repeat: string;
 }
@@ -74,6 +76,7 @@ export function buildOutcome(input: OutcomeInput): Outcome {
     ...(report.excepted.length > 0 ? { except: [...report.excepted] } : {}),
     measures: { ...report.values },
     ...(why === null ? {} : { why }),
+    ...(input.yardsticks === undefined ? {} : { yardsticks: { central: { ...input.yardsticks.central }, known: { ...input.yardsticks.known } } }),
     digest: input.digest,
     ticks: input.ticks,
     wall_s: input.wall_s,

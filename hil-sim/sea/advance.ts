@@ -89,6 +89,7 @@ export function startSea(plan: SeaPlan): Sea {
   return {
     get tick() { return state.counts.tick; },
     get framesSent() { return state.modem.counts.framesSent; },
+    tickS: plan.tickS,
     truth: state.truth,
     perceive: () => perceive(state),
     advance: (steers) => advance(state, steers),

@@ -54,6 +54,7 @@ export interface Reboot {
 
 export interface Sea {
   readonly tick: number;
+  readonly tickS: number;
   readonly truth: Truth;
   /** Senses of the current tick in fleet order; null for a vehicle whose agent is down by the script. */
   perceive(): readonly (Sense | null)[];

@@ -38,6 +38,10 @@ export interface EstimatorTick {
   readonly headingRad: number;
   readonly speedMps: number;
   readonly fix: { readonly atS: number; readonly eastM: number; readonly northM: number; readonly sigmaM: number } | null;
+  /** The true current, in the yardstick run in which it is given; else null. */
+  readonly given: { readonly eastMps: number; readonly northMps: number } | null;
+  /** Whether own notes stay unrounded, as in the yardstick run in which all notes are shared at once. */
+  readonly unrounded: boolean;
 }
 
 interface Memory {
@@ -122,7 +126,7 @@ export function reckonTick(estimator: Estimator, tick: EstimatorTick): Note | nu
   renewPosition(estimator);
   if (tick.fix === null) return null;
   if (!passesGate(estimator, tick.fix)) return null;
-  const note = takeFix(estimator, tick.fix);
+  const note = takeFix(estimator, tick.fix, tick.unrounded);
   estimator.memory.sinceSpread = SPREAD_TICKS;
   renewPosition(estimator);
   return note;
@@ -181,6 +185,8 @@ export function hearOwnNumber(estimator: Estimator, number: number): void {
 /** A start in the middle of a run, with memory lost: the start place says nothing of where it is now. */
 export function startLost(estimator: Estimator): void {
   const { anchor, memory, mission } = estimator;
+  anchor.eastM = mission.loop.centre.east_m;
+  anchor.northM = mission.loop.centre.north_m;
   anchor.sigmaM = mission.keepIn.radius_m;
   anchor.isFix = false;
   memory.isLost = true;
@@ -218,6 +224,8 @@ function moveOn(estimator: Estimator, tick: EstimatorTick): void {
       waterNorthM: (seconds * (northMps + memory.lastNorthMps)) / 2,
       eastM: position.eastM,
       northM: position.northM,
+      carriedEastM: tick.given === null ? 0 : seconds * tick.given.eastMps,
+      carriedNorthM: tick.given === null ? 0 : seconds * tick.given.northMps,
     };
     addWay(map.plan, leg, way);
     addTrack(track, way);
@@ -283,14 +291,14 @@ function passesGate(estimator: Estimator, fix: EstimatorFix): boolean {
 }
 
 /** Ends the leg at the fix: issues its note, if there is one, and starts the next leg there. */
-function takeFix(estimator: Estimator, fix: EstimatorFix): Note | null {
+function takeFix(estimator: Estimator, fix: EstimatorFix, unrounded: boolean): Note | null {
   const { anchor, leg, map, mission, track } = estimator;
   const tail = tailWay(track, fix.atS);
   const seconds = fix.atS - leg.startS;
   const { noteLeast_s: leastS, noteMost_s: mostS } = mission.onboard;
   if (anchor.isFix && seconds < leastS) return null;
   let note: Note | null = null;
-  if (anchor.isFix && seconds <= mostS) note = issueNote(estimator, fix, tail);
+  if (anchor.isFix && seconds <= mostS) note = issueNote(estimator, fix, { ...tail, unrounded });
   anchor.eastM = fix.eastM;
   anchor.northM = fix.northM;
   anchor.sigmaM = fix.sigmaM;
@@ -307,7 +315,7 @@ function takeFix(estimator: Estimator, fix: EstimatorFix): Note | null {
 }
 
 function issueNote(
-  estimator: Estimator, fix: EstimatorFix, tail: { seconds: number; waterEastM: number; waterNorthM: number },
+  estimator: Estimator, fix: EstimatorFix, tail: { waterEastM: number; waterNorthM: number; carriedEastM: number; carriedNorthM: number; unrounded: boolean },
 ): Note | null {
   const { anchor, leg, log, memory, selfIndex, track, map } = estimator;
   const last = Math.max(newestNumber(log, selfIndex), memory.ownNumberHeard);
@@ -334,8 +342,12 @@ function issueNote(
     skipped: skip,
   };
   memory.hasIssued = true;
-  const note = roundedNote(raw);
+  const note = tail.unrounded ? raw : roundedNote(raw);
+  map.plan.given.east = (leg.carriedEastM - tail.carriedEastM) / seconds;
+  map.plan.given.north = (leg.carriedNorthM - tail.carriedNorthM) / seconds;
   takeIntoMap(map, note);
+  map.plan.given.east = 0;
+  map.plan.given.north = 0;
   return note;
 }
 

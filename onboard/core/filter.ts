@@ -35,6 +35,8 @@ export interface FilterPlan {
   readonly fixAt: number;
   readonly newFixAt: number;
   readonly size: number;
+  /** What is given of a note's mean current, in the yardstick run that gives it; 0 otherwise. */
+  readonly given: { east: number; north: number };
   readonly scratch: Scratch;
 }
 
@@ -59,7 +61,7 @@ export const TIDE_AT = 2;
 export const CURRENT_STATES = 6;
 const NEVER = -1e9;
 
-export type PlanNumbers = Omit<FilterPlan, 'valueAt' | 'rateAt' | 'biasAt' | 'fixAt' | 'newFixAt' | 'size' | 'scratch'>;
+export type PlanNumbers = Omit<FilterPlan, 'valueAt' | 'rateAt' | 'biasAt' | 'fixAt' | 'newFixAt' | 'size' | 'given' | 'scratch'>;
 
 /** Lays out the state. */
 export function layOut(numbers: PlanNumbers): FilterPlan {
@@ -73,6 +75,7 @@ export function layOut(numbers: PlanNumbers): FilterPlan {
   const size = newFixAt + 2;
   return {
     ...numbers, valueAt, rateAt, biasAt, fixAt, newFixAt, size,
+    given: { east: 0, north: 0 },
     scratch: {
       modes: { east: new Float64Array(count), north: new Float64Array(count) },
       rowEast: new Float64Array(size),

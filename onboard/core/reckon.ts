@@ -17,6 +17,9 @@ export interface Leg {
   seconds: number;
   waterEastM: number;
   waterNorthM: number;
+  /** Way carried by a current that was given (yardstick runs); 0 otherwise. */
+  carriedEastM: number;
+  carriedNorthM: number;
   tideCosS: number;
   tideSinS: number;
   readonly eastS: Float64Array;
@@ -37,7 +40,8 @@ export interface Anchor {
 
 export function startLeg(modes: number): Leg {
   return {
-    startS: 0, seconds: 0, waterEastM: 0, waterNorthM: 0, tideCosS: 0, tideSinS: 0,
+    startS: 0, seconds: 0, waterEastM: 0, waterNorthM: 0, carriedEastM: 0, carriedNorthM: 0,
+    tideCosS: 0, tideSinS: 0,
     eastS: new Float64Array(modes), northS: new Float64Array(modes),
     eastS2: new Float64Array(modes), northS2: new Float64Array(modes),
   };
@@ -48,6 +52,8 @@ export function resetLeg(leg: Leg, startS: number): void {
   leg.seconds = 0;
   leg.waterEastM = 0;
   leg.waterNorthM = 0;
+  leg.carriedEastM = 0;
+  leg.carriedNorthM = 0;
   leg.tideCosS = 0;
   leg.tideSinS = 0;
   leg.eastS.fill(0);
@@ -64,6 +70,8 @@ export interface Way {
   readonly waterNorthM: number;
   readonly eastM: number;
   readonly northM: number;
+  readonly carriedEastM: number;
+  readonly carriedNorthM: number;
 }
 
 export function addWay(plan: FilterPlan, leg: Leg, way: Way): void {
@@ -71,6 +79,8 @@ export function addWay(plan: FilterPlan, leg: Leg, way: Way): void {
   leg.seconds += way.seconds;
   leg.waterEastM += way.waterEastM;
   leg.waterNorthM += way.waterNorthM;
+  leg.carriedEastM += way.carriedEastM;
+  leg.carriedNorthM += way.carriedNorthM;
   const angle = plan.tidePerS * way.midS;
   leg.tideCosS += way.seconds * Math.cos(angle);
   leg.tideSinS += way.seconds * Math.sin(angle);
@@ -145,8 +155,8 @@ export function meanPosition(
   map: CurrentMap, of: { leg: Leg; anchor: Anchor }, rows: PositionRows, out: PositionAnswer,
 ): void {
   const { mean } = map.active;
-  let eastM = of.anchor.eastM + of.leg.waterEastM;
-  let northM = of.anchor.northM + of.leg.waterNorthM;
+  let eastM = of.anchor.eastM + of.leg.waterEastM + of.leg.carriedEastM;
+  let northM = of.anchor.northM + of.leg.waterNorthM + of.leg.carriedNorthM;
   for (let at = 0; at < mean.length; at++) {
     eastM += rows.east[at]! * mean[at]!;
     northM += rows.north[at]! * mean[at]!;

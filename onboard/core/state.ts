@@ -3,6 +3,7 @@
  * that it calls, and by nobody else.
  */
 import { assert } from '../../messages/assert.ts';
+import type { Note } from '../../messages/frame.ts';
 import type { Mission } from '../../messages/mission.ts';
 import { startEstimator, type BiasAnswer, type CurrentAnswer, type Estimator } from './estimator.ts';
 import { startGuidance, type Guidance, type GuidanceInput, type GuidanceOutput } from './guidance.ts';
@@ -38,7 +39,11 @@ export interface State {
   readonly meanHere: Float64Array;
   readonly meanPoint: Float64Array;
   readonly bias: BiasAnswer;
-  readonly counts: { hasBegun: boolean };
+  readonly counts: {
+    hasBegun: boolean;
+    /** The own note that this tick issued, or null. */
+    issued: Note | null;
+  };
   readonly guidanceIn: GuidanceInput;
   readonly guidanceOut: GuidanceOutput;
 }
@@ -87,7 +92,7 @@ export function start(mission: Mission): State {
     meanHere: new Float64Array(2),
     meanPoint: new Float64Array(2),
     bias: { compassBiasRad: 0, compassBiasSigmaRad: 0, logScale: 0, logScaleSigma: 0 },
-    counts: { hasBegun: false },
+    counts: { hasBegun: false, issued: null },
     guidanceIn: {
       atS: 0, tickS: mission.tick_s, eastM: 0, northM: 0, depthM: 0, positionSigmaM: 0, compassBiasRad: 0,
       logScale: 0, headingRad: 0, speedMps: 0, battery: 1, currentEastMps: 0, currentNorthMps: 0,

@@ -7,7 +7,8 @@
  * reads a clock, draws a number, waits, or throws for what the sea may send.
  */
 import { degFromRad, headingDegFromRad, radFromDeg } from '../../messages/angles.ts';
-import { AGENT_STATES, encodeFrame, hexFromBytes } from '../../messages/frame.ts';
+import { AGENT_STATES, encodeFrame, hexFromBytes, type Note } from '../../messages/frame.ts';
+import type { Aid, AidedSense } from '../../messages/aid.ts';
 import type { Sense } from '../../messages/sense.ts';
 import type { Estimate, HeardFate, MapMessage, Steer } from '../../messages/steer.ts';
 import {
@@ -25,15 +26,18 @@ const MINUTE_S = 60;
 const SIGMA_POINT_TICKS = 4;
 const SIGMA_HERE_TICKS = 15;
 
-/** Answers one sense. */
-export function step(state: State, sense: Sense): Steer {
+/** Answers one sense. Only yardstick runs aid it. */
+export function step(state: State, sense: Sense | AidedSense): Steer {
+  const aid = 'aid' in sense ? sense.aid : null;
   if (!state.counts.hasBegun) begin(state, sense);
   const heard = hearFrames(state, sense);
-  reckon(state, sense);
+  if (aid?.kind === 'central') for (const note of aid.notes) takeNote(state.estimator, note);
+  state.counts.issued = reckon(state, sense, aid);
   findItself(state, sense);
   workEstimator(state.estimator);
   const minute = isWholeMinute(state, sense.tick);
   renewPicture(state, sense, minute);
+  if (aid?.kind === 'known') useGiven(state, aid);
   steerTheVehicle(state, sense);
   const out = state.guidanceOut;
   return {
@@ -63,7 +67,7 @@ function hearFrames(state: State, sense: Sense): HeardFate[] {
     fates.push(reading.fate);
     if (reading.fate !== 'used') continue;
     hearPeer(state.guidance, reading.frame, heard.at_s);
-    if (state.mission.sharing === 'solo') continue;
+    if (state.mission.sharing === 'solo' || 'aid' in sense) continue;
     hearHaves(state.sharing, state.estimator.log, reading);
     hearOwnNumber(state.estimator, ownNumberHeard(state.sharing));
     if (reading.frame.note !== null) takeNote(state.estimator, reading.frame.note);
@@ -71,13 +75,15 @@ function hearFrames(state: State, sense: Sense): HeardFate[] {
   return fates;
 }
 
-function reckon(state: State, sense: Sense): void {
+function reckon(state: State, sense: Sense, aid: Aid | null): Note | null {
   const { fix } = sense;
-  reckonTick(state.estimator, {
+  return reckonTick(state.estimator, {
     atS: sense.at_s,
     headingRad: radFromDeg(sense.heading_deg),
     speedMps: sense.speed_mps,
     fix: fix === null ? null : { atS: fix.at_s, eastM: fix.east_m, northM: fix.north_m, sigmaM: fix.sigma_m },
+    given: aid?.kind === 'known' ? { eastMps: aid.east_mps, northMps: aid.north_mps } : null,
+    unrounded: aid?.kind === 'central',
   });
 }
 
@@ -115,6 +121,16 @@ function renewPicture(state: State, sense: Sense, minute: boolean): void {
     table.currentEastMps[point] = mean[0]!;
     table.currentNorthMps[point] = mean[1]!;
   }
+}
+
+/** The picture of the yardstick run in which the true current is given. */
+function useGiven(state: State, aid: Extract<Aid, { kind: 'known' }>): void {
+  const { meanHere, table } = state;
+  meanHere[0] = aid.east_mps;
+  meanHere[1] = aid.north_mps;
+  if (aid.loop === null) return;
+  table.currentEastMps.set(aid.loop.east_mps);
+  table.currentNorthMps.set(aid.loop.north_mps);
 }
 
 function steerTheVehicle(state: State, sense: Sense): void {

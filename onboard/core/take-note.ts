@@ -78,8 +78,8 @@ export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
   rowEast[newFixAt] = 1 / note.durationS;
   rowNorth[newFixAt + 1] = 1 / note.durationS;
   const variance = plan.noteSigmaMps ** 2;
-  update(plan, filter, rowEast, { value: note.currentEastMps, variance });
-  update(plan, filter, rowNorth, { value: note.currentNorthMps, variance });
+  update(plan, filter, rowEast, { value: note.currentEastMps - plan.given.east, variance });
+  update(plan, filter, rowNorth, { value: note.currentNorthMps - plan.given.north, variance });
   moveState(filter, size, newFixAt, fix);
   moveState(filter, size, newFixAt + 1, fix + 1);
   filter.lastNumber[origin] = note.number;

@@ -7,10 +7,11 @@ import type { Way } from './reckon.ts';
 const WAYS = 128;
 const PLACES = 512;
 const PLACE_EVERY_S = 5;
-const FIELDS = 6;
+const FIELDS = 8;
 
 export interface Track {
-  /** Ring of ways: midS, seconds, waterEastM, waterNorthM, eastM, northM. */
+  /** Ring of ways: midS, seconds, waterEastM, waterNorthM, eastM, northM, carriedEastM,
+   * carriedNorthM. */
   readonly ways: Float64Array;
   /** Ring of places: timeS, eastM, northM. */
   readonly places: Float64Array;
@@ -23,7 +24,10 @@ export function startTrack(): Track {
 
 export function addTrack(track: Track, way: Way): void {
   const { ways, places, counts } = track;
-  ways.set([way.midS, way.seconds, way.waterEastM, way.waterNorthM, way.eastM, way.northM], (counts.ways % WAYS) * FIELDS);
+  ways.set(
+    [way.midS, way.seconds, way.waterEastM, way.waterNorthM, way.eastM, way.northM, way.carriedEastM, way.carriedNorthM],
+    (counts.ways % WAYS) * FIELDS,
+  );
   counts.ways += 1;
   const lastS = counts.places === 0 ? -Infinity : places[((counts.places - 1) % PLACES) * 3]!;
   if (way.midS - lastS < PLACE_EVERY_S) return;
@@ -42,13 +46,22 @@ export function wayBack(track: Track, back: number): Way {
   const { ways } = track;
   return {
     midS: ways[at]!, seconds: ways[at + 1]!, waterEastM: ways[at + 2]!, waterNorthM: ways[at + 3]!,
-    eastM: ways[at + 4]!, northM: ways[at + 5]!,
+    eastM: ways[at + 4]!, northM: ways[at + 5]!, carriedEastM: ways[at + 6]!, carriedNorthM: ways[at + 7]!,
   };
 }
 
+/** Sums of ways. */
+export interface Tail {
+  seconds: number;
+  waterEastM: number;
+  waterNorthM: number;
+  carriedEastM: number;
+  carriedNorthM: number;
+}
+
 /** The sum of the ways after `sinceS`. */
-export function tailWay(track: Track, sinceS: number): { seconds: number; waterEastM: number; waterNorthM: number } {
-  const sum = { seconds: 0, waterEastM: 0, waterNorthM: 0 };
+export function tailWay(track: Track, sinceS: number): Tail {
+  const sum = { seconds: 0, waterEastM: 0, waterNorthM: 0, carriedEastM: 0, carriedNorthM: 0 };
   const count = trackCount(track);
   for (let back = 1; back <= count; back++) {
     const at = ((track.counts.ways - back) % WAYS) * FIELDS;
@@ -56,6 +69,8 @@ export function tailWay(track: Track, sinceS: number): { seconds: number; waterE
     sum.seconds += track.ways[at + 1]!;
     sum.waterEastM += track.ways[at + 2]!;
     sum.waterNorthM += track.ways[at + 3]!;
+    sum.carriedEastM += track.ways[at + 6]!;
+    sum.carriedNorthM += track.ways[at + 7]!;
   }
   return sum;
 }
