@@ -1,19 +1,18 @@
 /**
  * Who takes which place, without a leader. Each vehicle reckons how soon each vehicle it has heard of
- * could meet each place, starts from fleet order, and swaps pairs as long as that lowers the sum of the
- * squared times: the same numbers give the same answer everywhere. What loss leaves different is
- * settled by claims: a vehicle on its way says the phase of the place it makes for; of two on one place
- * the one that holds it keeps it, else the lower in fleet order.
+ * could meet each place, and takes the way of giving out places that has the least sum of squared
+ * times, which also keeps straight ways from crossing: the same numbers give the same answer
+ * everywhere. What loss leaves different is settled by claims: a vehicle on its way says the phase of
+ * the place it makes for; of two on one place the one that holds it keeps it, else the lower in fleet order.
  */
 import { wrapHalf } from './angle.ts';
+import { assignColumns } from './assign.ts';
 import { pointAt, type Loop } from './loop.ts';
 import { nearestPattern, placePhase, turnsPerS, type Pattern } from './pattern.ts';
 import { isHeard, peerPhase, peerState, type Peers } from './peers.ts';
 
 /** Rounds of the meeting-time iteration; each shrinks the error by about the ratio of speeds. */
 const MEETING_ROUNDS = 24;
-/** Passes over all pairs; in practice three are enough for sixteen. */
-const SWAP_PASSES_MAX = 16;
 /** Two phases closer than this share of the smallest gap are one place. */
 const SAME_PLACE_SHARE = 0.45;
 /** A holder this near, as a share of the mean gap, is beside this vehicle. */
@@ -64,28 +63,7 @@ export function choosePlace(question: PlaceQuestion): number {
       costs[vehicle * count + place] = meetingS(question.loop, question.pattern, place, from) ** 2;
     }
   }
-  const placeOf = Uint8Array.from({ length: count }, (_, index) => index);
-  for (let pass = 0; pass < SWAP_PASSES_MAX; pass++) {
-    if (!swapPairs(placeOf, costs, count)) break;
-  }
-  return placeOf[peers.selfIndex]!;
-}
-
-/** One pass over all pairs in order; whether any swap lowered the cost. */
-function swapPairs(placeOf: Uint8Array, costs: Float64Array, count: number): boolean {
-  let swapped = false;
-  for (let a = 0; a < count; a++) {
-    for (let b = a + 1; b < count; b++) {
-      const now = costs[a * count + placeOf[a]!]! + costs[b * count + placeOf[b]!]!;
-      const then = costs[a * count + placeOf[b]!]! + costs[b * count + placeOf[a]!]!;
-      if (!(then < now * (1 - 1e-9))) continue;
-      const kept = placeOf[a]!;
-      placeOf[a] = placeOf[b]!;
-      placeOf[b] = kept;
-      swapped = true;
-    }
-  }
-  return swapped;
+  return assignColumns(costs, count)[peers.selfIndex]!;
 }
 
 /** The place that a peer holds or makes for, or −1 if it says nothing of one. */
