@@ -7,6 +7,7 @@
  * again on the way), each later one the next.
  */
 import { readMessage, writeMessage } from '../messages/codec.ts';
+import { CHECKPOINT_S } from '../messages/memory.ts';
 import { missionSchema, type Mission } from '../messages/mission.ts';
 import { normalise } from '../messages/normalise.ts';
 import { seaTickSchema } from '../messages/sea.ts';
@@ -15,8 +16,16 @@ import type { Status } from '../messages/status.ts';
 import { start, type State } from './core/state.ts';
 import { step } from './core/step.ts';
 
+/** Where an agent keeps its state for a start after a crash. */
+export interface Memory {
+  /** What was kept last, or null. */
+  read(): State | null;
+  keep(state: State): void;
+}
+
 export interface Answering {
   readonly vehicle: string;
+  readonly memory: Memory | null;
   mission: Mission | null;
   state: State | null;
   lastTick: number;
@@ -25,9 +34,10 @@ export interface Answering {
   agentState: Status['state'];
 }
 
-export function startAnswering(vehicle: string): Answering {
+/** An agent that waits for its mission; with a memory it starts from what that holds, if anything. */
+export function startAnswering(vehicle: string, memory: Memory | null = null): Answering {
   return {
-    vehicle, mission: null, state: null, lastTick: -1, lastSteer: new Uint8Array(0), refused: 0, agentState: null,
+    vehicle, memory, mission: null, state: null, lastTick: -1, lastSteer: new Uint8Array(0), refused: 0, agentState: null,
   };
 }
 
@@ -48,7 +58,7 @@ export function takeMission(answering: Answering, bytes: Uint8Array): boolean {
     return false;
   }
   answering.mission = reading.value;
-  answering.state = start(reading.value);
+  answering.state = answering.memory?.read() ?? start(reading.value);
   return true;
 }
 
@@ -69,6 +79,8 @@ export function takeSense(answering: Answering, bytes: Uint8Array): Uint8Array |
   answering.lastTick = sense.tick;
   answering.lastSteer = writeMessage(steer);
   answering.agentState = steer.state;
+  // Kept before the steer leaves: who has the steer may end this process at once.
+  if ((sense.tick * answering.state.mission.tick_s) % CHECKPOINT_S === 0) answering.memory?.keep(answering.state);
   return answering.lastSteer;
 }
 

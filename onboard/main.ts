@@ -1,42 +1,48 @@
 /**
- * One agent as a process: `--vehicle NAME --bench NAME --broker URL [--qos 0|1] [--tied]`. Exit status:
- * 0 the sea ended the run, 2 bad usage, 3 the agent failed. A tied agent belongs to the process that
- * started it: it ends when its standard input does, however that process died, and leaves an interrupt
- * from the keyboard to it.
+ * One agent as a process: `--vehicle NAME --bench NAME --broker URL [--qos 0|1] [--memory FILE [--resume]]
+ * [--tied]`. Exit status: 0 the sea ended the run, 2 bad usage, 3 the agent failed. With a memory the
+ * agent keeps its state in that file every ten minutes, and `--resume` starts it from there. A tied agent
+ * belongs to the process that started it: it ends when its standard input does, however that process
+ * died, and leaves an interrupt from the keyboard to it.
  */
 import { parseArgs } from 'node:util';
 import { isBenchName } from '../messages/topics.ts';
+import { fileMemory } from './file-memory.ts';
 import { runShell, type ShellOptions } from './shell.ts';
 
 const EXIT = { ended: 0, usage: 2, failed: 3 } as const;
 
 function usage(message: string): never {
-  process.stderr.write(`agent: ${message}\nusage: --vehicle NAME --bench NAME --broker URL [--qos 0|1] [--tied]\n`);
+  process.stderr.write(`agent: ${message}\nusage: --vehicle NAME --bench NAME --broker URL [--qos 0|1] [--memory FILE [--resume]]\n`);
   process.exit(EXIT.usage);
 }
 
-interface Arguments extends Omit<ShellOptions, 'onNote'> {
+interface Arguments extends Omit<ShellOptions, 'onNote' | 'memory'> {
   readonly tied: boolean;
+  readonly memory: string | undefined;
+  readonly resume: boolean;
 }
 
 function readArguments(): Arguments {
-  let values: { vehicle?: string; bench?: string; broker?: string; qos?: string; tied?: boolean };
+  let values: {
+    vehicle?: string; bench?: string; broker?: string; qos?: string; memory?: string; resume?: boolean; tied?: boolean;
+  };
   try {
+    const text = { type: 'string' } as const;
+    const flag = { type: 'boolean' } as const;
     ({ values } = parseArgs({
-      options: {
-        vehicle: { type: 'string' }, bench: { type: 'string' }, broker: { type: 'string' }, qos: { type: 'string' },
-        tied: { type: 'boolean' },
-      },
+      options: { vehicle: text, bench: text, broker: text, qos: text, memory: text, resume: flag, tied: flag },
     }));
   } catch (error) {
     return usage(error instanceof Error ? error.message : String(error));
   }
-  const { vehicle, bench, broker, qos = '0', tied = false } = values;
+  const { vehicle, bench, broker, qos = '0', memory, resume = false, tied = false } = values;
   if (vehicle === undefined || !/^[a-z][a-z0-9-]{0,23}$/.test(vehicle)) return usage('--vehicle must be a vehicle\'s name');
   if (bench === undefined || !isBenchName(bench)) return usage('--bench must be a bench\'s name');
   if (broker === undefined || !isBrokerUrl(broker)) return usage('--broker must be a URL like mqtt://127.0.0.1:1883');
   if (qos !== '0' && qos !== '1') return usage('--qos must be 0 or 1');
-  return { vehicle, bench, broker, qos: qos === '0' ? 0 : 1, tied };
+  if (resume && memory === undefined) return usage('--resume needs --memory FILE');
+  return { vehicle, bench, broker, qos: qos === '0' ? 0 : 1, memory, resume, tied };
 }
 
 function isBrokerUrl(text: string): boolean {
@@ -58,6 +64,8 @@ process.on('uncaughtException', (error) => {
   process.exit(EXIT.failed);
 });
 
-const end = await runShell({ ...options, onNote: (line) => { say(`agent ${options.vehicle}: ${line}`); } }, stop.signal);
+const onNote = (line: string): void => { say(`agent ${options.vehicle}: ${line}`); };
+const memory = options.memory === undefined ? null : fileMemory(options.memory, options.resume, onNote);
+const end = await runShell({ ...options, memory, onNote }, stop.signal);
 if (!end.ok) say(`agent ${options.vehicle}: ${end.reason}`);
 process.exit(end.ok ? EXIT.ended : EXIT.failed);

@@ -9,7 +9,7 @@ import { writeMessage } from '../messages/codec.ts';
 import type { Status } from '../messages/status.ts';
 import { seaTopic, vehicleTopic } from '../messages/topics.ts';
 import {
-  isRunOver, startAnswering, statusOf, takeMission, takeSense, type Answering,
+  isRunOver, startAnswering, statusOf, takeMission, takeSense, type Answering, type Memory,
 } from './answering.ts';
 
 const RECONNECT_MS = 500;
@@ -26,6 +26,7 @@ export interface ShellOptions {
   readonly bench: string;
   readonly broker: string;
   readonly qos: 0 | 1;
+  readonly memory: Memory | null;
   /** Where a person is told what the agent waits for. */
   readonly onNote: (line: string) => void;
 }
@@ -64,7 +65,7 @@ export function runShell(options: ShellOptions, stop: AbortSignal): Promise<Shel
 
 function connectShell(options: ShellOptions): Shell {
   const { vehicle, bench } = options;
-  const answering = startAnswering(vehicle);
+  const answering = startAnswering(vehicle, options.memory);
   const topics = {
     mission: vehicleTopic(bench, vehicle, 'mission'),
     sense: vehicleTopic(bench, vehicle, 'sense'),

@@ -17,8 +17,15 @@ export class BrokerTrouble extends Error {
   override readonly name = 'BrokerTrouble';
 }
 
-/** Joins the broker at `url`, or throws BrokerTrouble after ten seconds. */
-export async function joinBroker(url: string, bench: string, qos: Qos = 0): Promise<Bus> {
+export interface JoinOptions {
+  readonly url: string;
+  readonly bench: string;
+  readonly qos?: Qos;
+  readonly withinMs?: number;
+}
+
+/** Joins the broker at `url`, or throws BrokerTrouble if it cannot within ten seconds. */
+export async function joinBroker({ url, bench, qos = 0, withinMs = CONNECT_MS }: JoinOptions): Promise<Bus> {
   const last: SeaTick = { tick: 0, time_s: 0, phase: 'failed' };
   const client = connect(url, {
     protocolVersion: 4,
@@ -34,7 +41,7 @@ export async function joinBroker(url: string, bench: string, qos: Qos = 0): Prom
   client.on('message', (topic, bytes) => {
     for (const { matches, handler } of handlers) if (matches(topic)) handler(topic, bytes);
   });
-  await waitForConnection(client, url);
+  await waitForConnection(client, url, withinMs);
   return {
     url,
     publish(topic, bytes, { retain = false } = {}) {
@@ -63,14 +70,14 @@ function matcher(filter: string): (topic: string) => boolean {
   };
 }
 
-function waitForConnection(client: MqttClient, url: string): Promise<void> {
+function waitForConnection(client: MqttClient, url: string, withinMs: number): Promise<void> {
   return new Promise((resolve, reject) => {
     let why = 'no answer';
     const fail = (): void => {
       client.end(true);
-      reject(new BrokerTrouble(`no broker at ${url} within ${CONNECT_MS / 1000} s: ${why}`));
+      reject(new BrokerTrouble(`no broker at ${url} within ${withinMs / 1000} s: ${why}`));
     };
-    const timer = setTimeout(fail, CONNECT_MS);
+    const timer = setTimeout(fail, withinMs);
     client.on('error', (error) => {
       why = error.message === '' ? why : error.message;
       if ('code' in error && typeof error.code === 'number' && !client.connected) {

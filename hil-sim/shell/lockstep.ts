@@ -15,10 +15,13 @@ const ASK_AGAIN_MS = 1000;
 const GIVE_UP_MS = 10_000;
 
 /** Why a steer is refused. */
-export const STEER_REFUSALS = ['foreign', 'garbled', 'another tick', 'repeated', 'fates do not fit'] as const;
+export const STEER_REFUSALS = [
+  'foreign', 'garbled', 'another tick', 'repeated', 'not asked', 'fates do not fit',
+] as const;
 export type SteerRefusal = (typeof STEER_REFUSALS)[number];
 
-export interface LockstepAgents extends Agents {
+/** All of Agents but starting and ending them, which a bus cannot do. */
+export interface LockstepAgents extends Omit<Agents, 'restart'> {
   /** Ends the run: the tick that is being waited for, or else the next one, fails with this reason. */
   fail(reason: string, vehicle: string | null): void;
   /** Steers refused so far, by reason. */
@@ -39,12 +42,12 @@ export interface LockstepOptions {
 /** One tick that is not yet answered. */
 interface Waiting {
   readonly tick: number;
-  readonly senses: readonly Sense[];
+  readonly senses: readonly (Sense | null)[];
   readonly steers: (Steer | null)[];
   missing: number;
   readonly startedMs: number;
   askedMs: number;
-  readonly resolve: (steers: readonly Steer[]) => void;
+  readonly resolve: (steers: readonly (Steer | null)[]) => void;
   readonly reject: (failure: RunFailure) => void;
 }
 
@@ -63,7 +66,7 @@ export async function lockstepAgents(options: LockstepOptions): Promise<Lockstep
   const lockstep: Lockstep = {
     options,
     senseTopics: vehicles.map((vehicle) => vehicleTopic(bench, vehicle, 'sense')),
-    refused: { foreign: 0, garbled: 0, 'another tick': 0, repeated: 0, 'fates do not fit': 0 },
+    refused: { foreign: 0, garbled: 0, 'another tick': 0, repeated: 0, 'not asked': 0, 'fates do not fit': 0 },
     waiting: null,
     failed: null,
     lastTick: -1,
@@ -85,18 +88,23 @@ export async function lockstepAgents(options: LockstepOptions): Promise<Lockstep
   };
 }
 
-function ask(lockstep: Lockstep, senses: readonly Sense[]): Promise<readonly Steer[]> {
+type Answer = ReturnType<Agents['answer']>;
+
+function ask(lockstep: Lockstep, senses: readonly (Sense | null)[]): Answer {
   const { options: { bus }, senseTopics, failed } = lockstep;
-  const { tick } = senses[0]!;
+  const first = senses.find((sense) => sense !== null);
+  if (first === undefined || first === null) return senses.map(() => null); // every agent is down by the script
+  const { tick } = first;
   if (failed !== null) return Promise.reject(new RunFailure(failed.reason, tick, failed.vehicle));
   return new Promise((resolve, reject) => {
     const nowMs = performance.now();
     lockstep.waiting = {
-      tick, senses, steers: new Array<Steer | null>(senses.length).fill(null), missing: senses.length,
-      startedMs: nowMs, askedMs: nowMs, resolve, reject,
+      tick, senses, steers: new Array<Steer | null>(senses.length).fill(null), startedMs: nowMs, askedMs: nowMs,
+      missing: senses.filter((sense) => sense !== null).length, resolve, reject,
     };
     for (let index = 0; index < senses.length; index++) {
-      bus.publish(senseTopics[index]!, writeMessage(normalise(senses[index])));
+      const sense = senses[index];
+      if (sense !== null) bus.publish(senseTopics[index]!, writeMessage(normalise(sense)));
     }
   });
 }
@@ -112,14 +120,16 @@ function take(lockstep: Lockstep, topic: string, bytes: Uint8Array): SteerRefusa
   const steer = message.value;
   if (waiting === null) return steer.tick === lockstep.lastTick ? 'repeated' : 'another tick';
   if (steer.tick !== waiting.tick) return 'another tick';
+  const sense = waiting.senses[index] ?? null;
+  if (sense === null) return 'not asked';
   if (waiting.steers[index] !== null) return 'repeated';
-  if (steer.heard.length !== waiting.senses[index]!.heard.length) return 'fates do not fit';
+  if (steer.heard.length !== sense.heard.length) return 'fates do not fit';
   waiting.steers[index] = steer;
   waiting.missing -= 1;
   if (waiting.missing > 0) return null;
   lockstep.waiting = null;
   lockstep.lastTick = waiting.tick;
-  waiting.resolve(waiting.steers as Steer[]);
+  waiting.resolve(waiting.steers);
   return null;
 }
 
@@ -130,16 +140,20 @@ function lookAtTheClock(lockstep: Lockstep): void {
   if (waiting === null) return;
   const nowMs = performance.now();
   if (nowMs - waiting.startedMs >= giveUpMs) {
-    const late = vehicles.filter((_vehicle, index) => waiting.steers[index] === null);
+    const late = vehicles.filter((_vehicle, index) => isMissing(waiting, index));
     const others = late.length > 1 ? ` (nor from ${late.slice(1).join(', ')})` : '';
     lockstep.failed ??= { reason: `no steer from ${late[0]!}${others} for ${giveUpMs / 1000} s`, vehicle: late[0]! };
     giveUp(lockstep, waiting);
   } else if (nowMs - waiting.askedMs >= askAgainMs) {
     waiting.askedMs = nowMs;
     for (let index = 0; index < vehicles.length; index++) {
-      if (waiting.steers[index] === null) bus.publish(senseTopics[index]!, writeMessage(waiting.senses[index]));
+      if (isMissing(waiting, index)) bus.publish(senseTopics[index]!, writeMessage(waiting.senses[index]));
     }
   }
+}
+
+function isMissing(waiting: Waiting, index: number): boolean {
+  return waiting.senses[index] !== null && waiting.steers[index] === null;
 }
 
 function giveUp(lockstep: Lockstep, waiting: Waiting): void {

@@ -28,42 +28,52 @@ export interface ReadinessOptions {
 }
 
 export interface Readiness {
-  /** Resolves when every vehicle has said `ready`; rejects with AgentTrouble. */
-  readonly all: Promise<void>;
+  /** Resolves when every one of these vehicles has said `ready`; rejects with AgentTrouble. */
+  expect(vehicles: readonly string[]): Promise<void>;
   fail(trouble: AgentTrouble): void;
   close(): void;
+}
+
+/** One call of `expect` that is not yet met. */
+interface Expecting {
+  readonly missing: Set<string>;
+  readonly timer: NodeJS.Timeout;
+  readonly resolve: () => void;
+  readonly reject: (trouble: AgentTrouble) => void;
 }
 
 /** Starts to listen; statuses count from here on. */
 export async function watchStatuses(options: ReadinessOptions): Promise<Readiness> {
   const { bus, bench, vehicles, leave, lockstep } = options;
-  const missing = new Set(vehicles);
-  let succeed: () => void = () => undefined;
-  let reject: (trouble: AgentTrouble) => void = () => undefined;
+  const expecting = new Set<Expecting>();
   let isOver = false;
-  const all = new Promise<void>((resolve, rejectAll) => {
-    succeed = resolve;
-    reject = rejectAll;
-  });
-  all.catch(() => undefined); // whoever waits hears of it; nobody may wait yet
-  const timer = setTimeout(() => {
-    const late = vehicles.find((vehicle) => missing.has(vehicle) && !leave.includes(vehicle));
-    if (late === undefined) return;
-    reject(new AgentTrouble(late, `the agent of ${late} did not say that it is ready within ${READY_MS / 1000} s`));
-  }, READY_MS);
-
+  const settle = (one: Expecting): void => {
+    clearTimeout(one.timer);
+    expecting.delete(one);
+  };
+  const fail = (trouble: AgentTrouble): void => {
+    for (const one of [...expecting]) {
+      settle(one);
+      one.reject(trouble);
+    }
+  };
   const hear = (vehicle: string, { phase, reason }: Status): void => {
     if (phase === 'failed') {
       const why = `the agent of ${vehicle} failed: ${reason ?? 'it did not say why'}`;
-      reject(new AgentTrouble(vehicle, why));
+      fail(new AgentTrouble(vehicle, why));
       lockstep.fail(why, vehicle);
     }
     if (phase !== 'ready') return;
-    if (lockstep.lastTick() >= 0) lockstep.fail(`a second agent of ${vehicle} has joined in the middle of the run`, vehicle);
-    missing.delete(vehicle);
-    if (missing.size > 0) return;
-    clearTimeout(timer);
-    succeed();
+    const one = [...expecting].find(({ missing }) => missing.has(vehicle));
+    if (one === undefined) {
+      if (lockstep.lastTick() < 0) return;
+      lockstep.fail(`a second agent of ${vehicle} has joined in the middle of the run`, vehicle);
+      return;
+    }
+    one.missing.delete(vehicle);
+    if (one.missing.size > 0) return;
+    settle(one);
+    one.resolve();
   };
   for (const vehicle of vehicles) {
     // A broker that outlives benches may still hold the words of agents long gone.
@@ -76,14 +86,19 @@ export async function watchStatuses(options: ReadinessOptions): Promise<Readines
     if (status.ok && status.value.vehicle === reading.vehicle) hear(reading.vehicle, status.value);
   });
   return {
-    all,
-    fail(trouble) {
-      clearTimeout(timer);
-      reject(trouble);
-    },
+    fail,
+    expect: (wanted) => new Promise((resolve, reject) => {
+      const missing = new Set(wanted);
+      const timer = setTimeout(() => {
+        const late = wanted.find((vehicle) => missing.has(vehicle) && !leave.includes(vehicle));
+        if (late === undefined) return;
+        fail(new AgentTrouble(late, `the agent of ${late} did not say that it is ready within ${READY_MS / 1000} s`));
+      }, READY_MS);
+      expecting.add({ missing, timer, resolve, reject });
+    }),
     close() {
       isOver = true;
-      clearTimeout(timer);
+      for (const one of [...expecting]) settle(one);
     },
   };
 }

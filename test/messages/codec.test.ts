@@ -10,7 +10,8 @@ import { steerSchema } from '../../messages/steer.ts';
 import { SENSE_BARE, SENSE_FULL, STEER_BARE, STEER_FULL } from '../support/messages.ts';
 import { missionFor } from '../support/mission.ts';
 
-const SCHEMAS = { missionSchema, senseSchema, steerSchema, statusSchema, seaTickSchema };
+const READERS = [missionSchema, senseSchema, steerSchema, statusSchema, seaTickSchema]
+  .map((schema) => (bytes: Uint8Array) => readMessage<unknown>(schema, bytes));
 const bytesOf = (text: string): Uint8Array => new TextEncoder().encode(text);
 const senseText = (change: Record<string, unknown>): Uint8Array => bytesOf(JSON.stringify({ ...SENSE_BARE, ...change }));
 
@@ -53,7 +54,7 @@ describe('reading a message', () => {
   it('never throws, for any bytes and any schema', () => {
     const text = fc.oneof(fc.json(), fc.string()).map(bytesOf);
     fc.assert(fc.property(fc.oneof(fc.uint8Array({ maxLength: 300 }), text), (bytes) => {
-      for (const schema of Object.values(SCHEMAS)) expect(typeof readMessage(schema, bytes).ok).toBe('boolean');
+      for (const read of READERS) expect(typeof read(bytes).ok).toBe('boolean');
     }), { numRuns: 500 });
   });
 

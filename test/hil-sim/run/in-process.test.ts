@@ -21,9 +21,10 @@ function jsonAgents(agentsOf: (missions: ReturnType<typeof missionsFor>) => Agen
   const inner = agentsOf(missionsFor(trial).map((mission) => read(missionSchema, mission)));
   return {
     answer: (senses) => {
-      const steers = inner.answer(senses.map((sense) => read<Sense>(senseSchema, sense))) as readonly Steer[];
-      return steers.map((steer) => read<Steer>(steerSchema, steer));
+      const steers = inner.answer(senses.map((sense) => sense && read<Sense>(senseSchema, sense)));
+      return (steers as readonly (Steer | null)[]).map((steer) => steer && read<Steer>(steerSchema, steer));
     },
+    restart: (index, phase, memory) => inner.restart(index, phase, memory),
     close: () => undefined,
   };
 }

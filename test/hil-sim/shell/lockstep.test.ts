@@ -1,5 +1,5 @@
 /** Lockstep over a bus within the test: no sockets, so that every order of arrival can be played. */
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { RunFailure } from '../../../hil-sim/run/run-trial.ts';
 import { lockstepAgents, type LockstepAgents } from '../../../hil-sim/shell/lockstep.ts';
 import type { Sense } from '../../../messages/sense.ts';
@@ -26,7 +26,7 @@ describe('lockstep', () => {
     for (const [vehicle, depth] of [['jade', 3], ['amber', 1], ['cobalt', 2]] as const) {
       bus.say(topicOf(vehicle), steerAt(7, { depth_m: depth }));
     }
-    expect((await answer).map(({ depth_m }) => depth_m)).toEqual([1, 2, 3]);
+    expect((await answer).map((steer) => steer?.depth_m)).toEqual([1, 2, 3]);
     expect(agents.lastTick()).toBe(7);
     await agents.close();
   });
@@ -49,11 +49,23 @@ describe('lockstep', () => {
     bus.say(topicOf('cobalt'), steerAt(1));
     await new Promise((resolve) => { setTimeout(resolve, 5); });
     expect(isDone).toBe(false);
-    expect(agents.refused).toEqual({ foreign: 1, garbled: 3, 'another tick': 3, repeated: 1, 'fates do not fit': 1 });
+    expect(agents.refused).toEqual({ foreign: 1, garbled: 3, 'another tick': 3, repeated: 1, 'not asked': 0, 'fates do not fit': 1 });
     bus.say(topicOf('jade'), steerAt(1));
     expect((await answer)[0]!.speed_mps).toBe(1);
     bus.say(topicOf('jade'), steerAt(1));
     expect(agents.refused.repeated).toBe(2);
+    await agents.close();
+  });
+
+  it('waits for no vehicle whose agent is down, and refuses what is said in its name', async () => {
+    const { bus, agents } = await lockstep();
+    const [amber, , jade] = sensesAt(4);
+    const answer = agents.answer([amber!, null, jade!]);
+    expect(bus.published.map(({ topic }) => topic)).toEqual(['drywake/b/amber/sense', 'drywake/b/jade/sense']);
+    for (const vehicle of VEHICLES) bus.say(topicOf(vehicle), steerAt(4));
+    expect((await answer).map((steer) => steer?.tick)).toEqual([4, undefined, 4]);
+    expect(agents.refused['not asked']).toBe(1);
+    expect(await agents.answer([null, null, null])).toEqual([null, null, null]);
     await agents.close();
   });
 
@@ -69,6 +81,30 @@ describe('lockstep', () => {
     bus.say(topicOf('cobalt'), steerAt(0));
     await answer;
     await agents.close();
+  });
+
+  it('asks again after one second and gives up after ten', async () => {
+    vi.useFakeTimers();
+    try {
+      const { bus, agents } = await lockstep();
+      const outcome = Promise.resolve(agents.answer(sensesAt(0))).catch((error: unknown) => error);
+      for (const vehicle of VEHICLES.slice(1)) bus.say(topicOf(vehicle), steerAt(0));
+      await vi.advanceTimersByTimeAsync(990);
+      expect(bus.published).toHaveLength(3);
+      await vi.advanceTimersByTimeAsync(300);
+      expect(bus.published).toHaveLength(4);
+      await vi.advanceTimersByTimeAsync(8600);
+      expect(bus.published.length).toBeGreaterThanOrEqual(10);
+      let isSettled = false;
+      void outcome.then(() => { isSettled = true; });
+      await vi.advanceTimersByTimeAsync(50);
+      expect(isSettled).toBe(false);
+      await vi.advanceTimersByTimeAsync(400);
+      expect(await outcome).toMatchObject({ vehicle: 'amber', tick: 0, reason: 'no steer from amber for 10 s' });
+      await agents.close();
+    } finally {
+      vi.useRealTimers();
+    }
   });
 
   it('gives up with the vehicle and the tick, and stays given up', async () => {

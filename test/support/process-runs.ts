@@ -1,0 +1,66 @@
+/** Runs with agents as processes, for tests: broker, agents, run, and all of it gone afterwards. */
+import { processAgents, type ProcessAgents, type ProcessOptions } from '../../hil-sim/run/processes.ts';
+import type { RunResult, Watcher } from '../../hil-sim/run/run-trial.ts';
+import { startBroker } from '../../hil-sim/shell/broker.ts';
+import type { Bus, Qos } from '../../hil-sim/shell/bus.ts';
+import type { Trial } from '../../hil-sim/trial/schema.ts';
+import { AGENT_COMMAND } from './build.ts';
+import { missionsFor, runOf } from './runs.ts';
+
+export interface ProcessRun {
+  readonly trial: Trial;
+  readonly ticks: number;
+  readonly qos?: Qos;
+  readonly bus?: Bus;
+  readonly more?: Partial<ProcessOptions>;
+  readonly watchers?: readonly Watcher[];
+  /** Called when all agents are ready, before the first tick. */
+  readonly onReady?: (agents: ProcessAgents, bus: Bus) => void | Promise<void>;
+}
+
+export interface ProcessRunResult {
+  readonly result: RunResult;
+  readonly refused: Readonly<Record<string, number>>;
+  readonly pids: readonly number[];
+}
+
+export const BENCH = 'under-test';
+
+/** Runs the trial over the bus given, or over an embedded broker of its own. */
+export async function runOverProcesses(run: ProcessRun): Promise<ProcessRunResult> {
+  const { trial, ticks, qos = 0, watchers = [] } = run;
+  const bus = run.bus ?? await startBroker({ qos });
+  try {
+    const agents = await processAgents({
+      bus, bench: BENCH, missions: missionsFor(trial), qos, agent: AGENT_COMMAND, ...run.more,
+    });
+    try {
+      await run.onReady?.(agents, bus);
+      const pids = [...agents.pids().values()];
+      const result = await runOf({ trial, ticks, agents, watchers });
+      return { result, refused: { ...agents.refused }, pids };
+    } finally {
+      await agents.close();
+    }
+  } finally {
+    await bus.close();
+  }
+}
+
+/** Whether a process is there; a zombie is not. */
+export function isAlive(pid: number): boolean {
+  try {
+    process.kill(pid, 0);
+    return true;
+  } catch {
+    return false;
+  }
+}
+
+export async function waitUntil(isSo: () => boolean, withinMs: number): Promise<boolean> {
+  const untilMs = performance.now() + withinMs;
+  while (!isSo() && performance.now() < untilMs) await sleep(20);
+  return isSo();
+}
+
+export const sleep = (ms: number): Promise<void> => new Promise((resolve) => { setTimeout(resolve, ms); });
