@@ -75,7 +75,7 @@ function holderPhase(pattern: Pattern, peers: Peers, peer: number, now: FleetNow
  * its place this one is, null if it does not hold one.
  */
 export function followFleet(
-  pattern: Pattern, peers: Peers, now: FleetNow & { readonly share: number; readonly ownTurns: number | null },
+  pattern: Pattern, peers: Peers, now: FleetNow & { share: number; ownTurns: number | null },
 ): void {
   let sum = 0;
   let counted = 0;

@@ -93,7 +93,8 @@ export const marrowBankWater: Water = (eastM, northM, timeS, out) => {
   const rest = (1 - Math.exp(-r2 / (rCore * rCore))) / r2;
   const swirl = (0.25 * 500 * rest) / (1 - Math.exp(-1.1209 * 1.1209));
   out[0] = 0.1 * Math.sin(set!) + major * Math.sin(bearing!) - minor * Math.cos(bearing!) - swirl * dy;
-  out[1] = 0.1 * Math.cos(set!) + major * Math.cos(bearing!) + minor * Math.sin(bearing!) + swirl * dx + eastM * 1e-4;
+  out[1] = 0.1 * Math.cos(set!) + major * Math.cos(bearing!) + minor * Math.sin(bearing!) + swirl * dx;
+  out[1] += eastM * 1e-4;
 };
 
 export function uniformWater(eastMps: number, northMps: number): Water {
@@ -118,7 +119,8 @@ function launch(scene: Scene, index: number): Vessel {
       currentSigmaMps: 0.01, mapStale: false, orders: [],
     },
     out: { headingRad: 0, speedMps: 0, depthM: 0, state: 'waiting', reasons: [], phase: 0 },
-    eastM: start.eastM, northM: start.northM, depthM: 0, headingRad: 0.7, speedMps: 0, battery: 1, begun: false, lostUntilS: 0, sequence: 0,
+    eastM: start.eastM, northM: start.northM, depthM: 0, headingRad: 0.7, speedMps: 0,
+    battery: 1, begun: false, lostUntilS: 0, sequence: 0,
   };
 }
 
@@ -200,14 +202,22 @@ function frameOf(vessel: Vessel, timeS: number): Frame {
   vessel.sequence = (vessel.sequence + 1) % 256;
   return {
     senderIndex: vessel.index, sequence: vessel.sequence, timeMod4096S: timeS % 4096,
-    eastM: Math.round(input.eastM), northM: Math.round(input.northM), phase: (Math.round(out.phase * 4096) % 4096) / 4096,
+    eastM: Math.round(input.eastM), northM: Math.round(input.northM),
+    phase: (Math.round(out.phase * 4096) % 4096) / 4096,
     stateIndex: AGENT_STATES.indexOf(out.state), positionUncertain: false, mapStale: false,
     batteryLow: isBatteryLow(vessel.guidance), note: null, haves: [0, 0, 0, 0, 0],
   };
 }
 
+interface Air {
+  timeS: number;
+  flights: Flight[];
+  /** Whether a pair's last frame was lost. */
+  readonly bad: Uint8Array;
+}
+
 /** Sends what is said in this second's slot; the losses of a pair come in runs of mean length `burst`. */
-function send(scene: Scene, vessels: readonly Vessel[], air: { timeS: number; flights: Flight[]; bad: Uint8Array }): void {
+function send(scene: Scene, vessels: readonly Vessel[], air: Air): void {
   const { timeS, flights, bad } = air;
   if (timeS % SLOT_S !== 0) return;
   const from = vessels[(timeS / SLOT_S) % scene.count]!;
@@ -258,7 +268,8 @@ class Line {
     let since = 0;
     for (let timeS = 0; timeS < this.crossM.length; timeS++) {
       const good = this.crossM[timeS]!.length === count
-        && this.crossM[timeS]!.every((off) => Math.abs(off) <= 75) && this.gapOff[timeS]!.every((off) => Math.abs(off) <= 0.3);
+        && this.crossM[timeS]!.every((off) => Math.abs(off) <= 75)
+        && this.gapOff[timeS]!.every((off) => Math.abs(off) <= 0.3);
       if (!good) since = timeS + 1;
       else if (timeS - since >= 600) return since;
     }
@@ -273,11 +284,14 @@ const rms = (rows: readonly Float64Array[]): number => {
   return Math.sqrt(sum / counted);
 };
 
+const greatest = (rows: readonly Float64Array[]): number =>
+  rows.reduce((most, row) => row.reduce((so, value) => Math.max(so, Math.abs(value)), most), 0);
+
 /** Runs a scene and measures it. */
 export function runScene(scene: Scene): Result {
   const vessels = Array.from({ length: scene.count }, (_, index) => launch(scene, index));
   const line = new Line();
-  const air = { timeS: 0, flights: [] as Flight[], bad: new Uint8Array(scene.count ** 2) };
+  const air: Air = { timeS: 0, flights: [], bad: new Uint8Array(scene.count ** 2) };
   const extremes = { separationM: Infinity, farthestM: 0 };
   for (let timeS = 0; timeS < scene.durationS; timeS++) {
     air.timeS = timeS;
@@ -303,7 +317,7 @@ export function runScene(scene: Scene): Result {
   return {
     formUpS,
     crossTrackRmsM: rms(line.crossM.slice(from)),
-    crossTrackMaxM: line.crossM.slice(from).reduce((most, row) => row.reduce((m, off) => Math.max(m, Math.abs(off)), most), 0),
+    crossTrackMaxM: greatest(line.crossM.slice(from)),
     gapRms: rms(line.gapOff.slice(from)),
     separationMinM: extremes.separationM,
     farthestM: extremes.farthestM,
@@ -315,12 +329,15 @@ function spread(vessels: readonly Vessel[], extremes: { separationM: number; far
   for (const one of vessels) {
     if (!one.begun) continue;
     const { centre } = one.guidance.mission.keepIn;
-    extremes.farthestM = Math.max(extremes.farthestM, Math.sqrt((one.eastM - centre.east_m) ** 2 + (one.northM - centre.north_m) ** 2));
+    const outM = Math.sqrt((one.eastM - centre.east_m) ** 2 + (one.northM - centre.north_m) ** 2);
+    extremes.farthestM = Math.max(extremes.farthestM, outM);
     for (const other of vessels) {
       if (other.index <= one.index || !other.begun || Math.abs(other.depthM - one.depthM) > 5) continue;
       const east = other.eastM - one.eastM;
       const north = other.northM - one.northM;
-      extremes.separationM = Math.min(extremes.separationM, Math.sqrt(east * east + north * north + (other.depthM - one.depthM) ** 2));
+      const down = other.depthM - one.depthM;
+      const apartM = Math.sqrt(east * east + north * north + down * down);
+      extremes.separationM = Math.min(extremes.separationM, apartM);
     }
   }
 }

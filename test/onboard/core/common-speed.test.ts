@@ -17,7 +17,7 @@ describe('the common speed along the loop', () => {
     expect(commonSpeedMps(loop, range, uniform(0.2, 0.2))).toBe(1.2);
   });
 
-  // METHODS part D: drift + v_min ≤ u ≤ v_max − drift, so with 0.5 to 1.6 m/s one speed exists to 0.55 m/s of drift.
+  // METHODS part D: drift + v_min ≤ u ≤ v_max − drift: with 0.5 to 1.6 m/s one speed exists to 0.55 m/s.
   it.each([0.1, 0.3, 0.5, 0.52])('can be kept all round in %f m/s of drift', (driftMps) => {
     const speedMps = commonSpeedMps(loop, range, uniform(driftMps, 0));
     expect(speedMps).toBeGreaterThanOrEqual(driftMps + 0.5 - 1e-9);

@@ -6,7 +6,9 @@ const { self } = missionFor();
 
 describe('charge for the way home', () => {
   // By hand: 1200 m at 1.2 m/s is 1000 s, at 30 W + 60 W 90 kJ; against 0.6 m/s twice that.
-  it.each([[1200, 0, 90_000], [1200, 0.6, 180_000], [0, 0.6, 0]])('of %f m against %f m/s is %f J', (distanceM, driftMps, energyJ) => {
+  it.each([
+    [1200, 0, 90_000], [1200, 0.6, 180_000], [0, 0.6, 0],
+  ])('of %f m against %f m/s is %f J', (distanceM, driftMps, energyJ) => {
     expect(homingJ(self, distanceM, driftMps)).toBeCloseTo(energyJ, 6);
   });
 

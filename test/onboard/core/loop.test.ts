@@ -8,7 +8,8 @@ import {
 const circles = fc.record({
   shape: fc.constant('circle' as const),
   centre: fc.record({
-    east_m: fc.double({ min: -3000, max: 3000, noNaN: true }), north_m: fc.double({ min: -3000, max: 3000, noNaN: true }),
+    east_m: fc.double({ min: -3000, max: 3000, noNaN: true }),
+    north_m: fc.double({ min: -3000, max: 3000, noNaN: true }),
   }),
   radius_m: fc.double({ min: 50, max: 3000, noNaN: true }),
   turn: fc.constantFrom('clockwise' as const, 'anticlockwise' as const),

@@ -3,7 +3,8 @@ import { AGENT_STATES } from '../../../messages/frame.ts';
 import { moveOn, type Event } from '../../../onboard/core/states.ts';
 
 const EVENTS: readonly Event[] = [
-  'order-surface', 'order-home', 'order-hold', 'battery-low', 'ready', 'in-place', 'off-the-loop', 'place-taken', 'arrived',
+  'order-surface', 'order-home', 'order-hold', 'battery-low', 'ready', 'in-place', 'off-the-loop',
+  'place-taken', 'arrived',
 ];
 
 /** DESIGN parts 1 and 2 name states and orders; every other pair changes nothing. */
