@@ -17,15 +17,39 @@ export interface Setting {
 
 export const SETTINGS = {
   // Holding the line and the place on it.
-  converge: { unit: 'm', default: 30, min: 2, max: 500, says: 'a cross-track error this large is steered out at 45 degrees; smaller ones less steeply' },
-  placeTime: { unit: 's', default: 100, min: 5, max: 3600, says: 'time in which a lag behind the own place is made up by speed' },
-  speedCorrection: { unit: 'mps', default: 0.35, min: 0, max: 5, says: 'greatest correction of the speed along the loop' },
-  patternFollow: { unit: 's', default: 300, min: 10, max: 36_000, says: 'time in which the pattern of places follows what the fleet shows' },
-  commonSpeedTime: { unit: 's', default: 600, min: 60, max: 36_000, says: 'time in which the common speed along the loop follows the currents' },
-  peerSilence: { unit: 's', default: 600, min: 10, max: 36_000, says: 'a peer that was not heard for so long no longer counts' },
-  takeHold: { unit: 'm', default: 60, min: 5, max: 500, says: 'joining ends within this cross-track, and twice it along the loop' },
+  converge: {
+    unit: 'm', default: 30, min: 2, max: 500,
+    says: 'a cross-track error this large is steered out at 45°, smaller ones less steeply',
+  },
+  placeTime: {
+    unit: 's', default: 100, min: 5, max: 3600,
+    says: 'time in which a lag behind the own place is made up by speed',
+  },
+  speedCorrection: {
+    unit: 'mps', default: 0.35, min: 0, max: 5,
+    says: 'greatest correction of the speed along the loop',
+  },
+  patternFollow: {
+    unit: 's', default: 300, min: 10, max: 36_000,
+    says: 'time in which the pattern of places follows what the fleet shows',
+  },
+  commonSpeedTime: {
+    unit: 's', default: 600, min: 60, max: 36_000,
+    says: 'time in which the common speed along the loop follows the currents',
+  },
+  peerSilence: {
+    unit: 's', default: 600, min: 10, max: 36_000,
+    says: 'a peer that was not heard for so long no longer counts',
+  },
+  takeHold: {
+    unit: 'm', default: 60, min: 5, max: 500,
+    says: 'joining ends within this cross-track, and twice it along the loop',
+  },
   letGo: { unit: 'm', default: 200, min: 10, max: 5000, says: 'holding ends beyond this cross-track' },
-  batteryReserve: { unit: 'share', default: 0.15, min: 0, max: 0.9, says: 'charge kept back when the way home is reckoned' },
+  batteryReserve: {
+    unit: 'share', default: 0.15, min: 0, max: 0.9,
+    says: 'charge kept back when the way home is reckoned',
+  },
   // The current map and the own sensors.
   tidePeriod: { unit: 's', default: 44_714.16, min: 600, max: 1e6, says: 'period of the tide that the map knows of; M2 is 12.4206 h' },
   uniformSigma: { unit: 'mps', default: 0.15, min: 0.001, max: 3, says: 'prior sd of the steady mean current, per component' },
