@@ -6,7 +6,7 @@ import type { Outcome } from './outcome.ts';
 const SHOWN: readonly MeasureName[] = [
   'formUp_s', 'crossTrackRms', 'crossTrackMax', 'gapRms', 'separationMin', 'currentRms', 'mapRms', 'positionRms', 'deliveryRatio',
 ];
-const COLUMN = 13;
+const COLUMN = 15;
 
 const cells = (texts: readonly string[]): string => texts.map((text) => text.padStart(COLUMN)).join('');
 

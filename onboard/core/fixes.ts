@@ -1,0 +1,115 @@
+/**
+ * What a fix does: it passes its gate or is left out, ends the leg, issues the leg's note and becomes
+ * the new anchor. A fix that fails the gate is left out; several in a row mean that the gate was wrong,
+ * and the last of them becomes a fresh anchor.
+ */
+import { NOTE_NUMBER_MAX, NOTE_SKIPPED_MAX, roundedNote, type Note } from '../../messages/frame.ts';
+import type { Estimator, EstimatorTick } from './estimator-state.ts';
+import { meanCurrentAt, takeIntoMap } from './map.ts';
+import { newestNumber } from './note-log.ts';
+import { addWay, positionSpread, resetLeg, type Anchor } from './reckon.ts';
+import { midTrack, tailWay, trackCount, wayBack, type Track } from './track.ts';
+
+/** Fixes in a row that fail the gate before the gate is held to be wrong. */
+const REFUSED_MAX = 3;
+
+type EstimatorFix = NonNullable<EstimatorTick['fix']>;
+
+/** Whether a fix is near enough to where the vehicle thinks it was; or the gate is held to be wrong. */
+export function passesGate(estimator: Estimator, fix: EstimatorFix): boolean {
+  const { memory, position, rows, map, leg, anchor, selfIndex, track } = estimator;
+  positionSpread(map, { anchor, selfIndex, whiteM2: memory.whitePerS * leg.seconds }, rows, position);
+  const then = tailWay(track, fix.atS);
+  const drift = new Float64Array(2);
+  meanCurrentAt(map, { eastM: position.eastM, northM: position.northM, atS: fix.atS }, drift);
+  const east = fix.eastM - (position.eastM - then.waterEastM - drift[0]! * then.seconds);
+  const north = fix.northM - (position.northM - then.waterNorthM - drift[1]! * then.seconds);
+  const varEast = position.varEastM2 + fix.sigmaM ** 2;
+  const varNorth = position.varNorthM2 + fix.sigmaM ** 2;
+  const cross = position.covEastNorthM2;
+  const determinant = varEast * varNorth - cross * cross;
+  const distance2 = (varNorth * east * east - 2 * cross * east * north + varEast * north * north) / determinant;
+  if (distance2 <= estimator.mission.onboard.fixGate ** 2) {
+    memory.refused = 0;
+    return true;
+  }
+  memory.refused += 1;
+  if (memory.refused < REFUSED_MAX) return false;
+  memory.refused = 0;
+  anchor.isFix = false;
+  return true;
+}
+
+/** Ends the leg at the fix: issues its note, if there is one, and starts the next leg there. */
+export function takeFix(estimator: Estimator, fix: EstimatorFix, unrounded: boolean): Note | null {
+  const { anchor, leg, map, mission, track } = estimator;
+  const tail = tailWay(track, fix.atS);
+  const seconds = fix.atS - leg.startS;
+  const { noteLeast_s: leastS, noteMost_s: mostS } = mission.onboard;
+  if (anchor.isFix && seconds < leastS) return null;
+  let note: Note | null = null;
+  if (anchor.isFix && seconds <= mostS) note = issueNote(estimator, fix, { ...tail, unrounded });
+  anchor.eastM = fix.eastM;
+  anchor.northM = fix.northM;
+  anchor.sigmaM = fix.sigmaM;
+  anchor.noteNumber = note === null ? 0 : note.number;
+  anchor.isFix = true;
+  estimator.memory.isLost = false;
+  resetLeg(leg, fix.atS);
+  const ways = trackCount(track);
+  for (let back = ways; back >= 1; back--) {
+    const way = wayBack(track, back);
+    if (way.midS > fix.atS) addWay(map.plan, leg, way);
+  }
+  return note;
+}
+
+function issueNote(
+  estimator: Estimator, fix: EstimatorFix, tail: { waterEastM: number; waterNorthM: number; carriedEastM: number; carriedNorthM: number; unrounded: boolean },
+): Note | null {
+  const { anchor, leg, log, memory, selfIndex, track, map } = estimator;
+  const last = Math.max(newestNumber(log, selfIndex), memory.ownNumberHeard);
+  const skip = !memory.hasIssued && last > 0 ? NOTE_SKIPPED_MAX : 0;
+  const number = last + 1 + skip;
+  if (number > NOTE_NUMBER_MAX) return null;
+  const seconds = fix.atS - leg.startS;
+  const waterEastM = leg.waterEastM - tail.waterEastM;
+  const waterNorthM = leg.waterNorthM - tail.waterNorthM;
+  const raw: Note = {
+    originIndex: selfIndex,
+    number,
+    endS: Math.max(0, fix.atS),
+    durationS: seconds,
+    currentEastMps: (fix.eastM - anchor.eastM - waterEastM) / seconds,
+    currentNorthMps: (fix.northM - anchor.northM - waterNorthM) / seconds,
+    startEastM: anchor.eastM,
+    startNorthM: anchor.northM,
+    endEastM: fix.eastM,
+    endNorthM: fix.northM,
+    sagM: sagOf(track, anchor, fix, { midS: leg.startS + seconds / 2 }),
+    chained: anchor.noteNumber > 0 && anchor.noteNumber === last,
+    fixSigmaM: fix.sigmaM,
+    skipped: skip,
+  };
+  memory.hasIssued = true;
+  const note = tail.unrounded ? raw : roundedNote(raw);
+  map.plan.given.east = (leg.carriedEastM - tail.carriedEastM) / seconds;
+  map.plan.given.north = (leg.carriedNorthM - tail.carriedNorthM) / seconds;
+  takeIntoMap(map, note);
+  map.plan.given.east = 0;
+  map.plan.given.north = 0;
+  return note;
+}
+
+/** How far the middle of the way lies to the right of the chord between its fixes. */
+function sagOf(track: Track, from: Anchor, to: EstimatorFix, at: { midS: number }): number {
+  const middle = midTrack(track, at.midS);
+  if (middle === null) return 0;
+  const east = to.eastM - from.eastM;
+  const north = to.northM - from.northM;
+  const chordM = Math.sqrt(east * east + north * north);
+  if (!(chordM > 1)) return 0;
+  const offEast = middle.eastM - (from.eastM + to.eastM) / 2;
+  const offNorth = middle.northM - (from.northM + to.northM) / 2;
+  return (offEast * north - offNorth * east) / chordM;
+}
