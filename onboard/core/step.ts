@@ -190,7 +190,7 @@ function estimateOf(state: State): Estimate {
     varCurrentEast_m2ps2: here.varEastM2ps2,
     covCurrentEastNorth_m2ps2: here.covEastNorthM2ps2,
     varCurrentNorth_m2ps2: here.varNorthM2ps2,
-    phase: state.guidanceOut.phase,
+    phase: state.guidance.at.phase,
     compassBias_deg: degFromRad(bias.compassBiasRad),
     compassBiasSigma_deg: degFromRad(bias.compassBiasSigmaRad),
     logScale: bias.logScale,
