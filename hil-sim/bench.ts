@@ -3,7 +3,7 @@ import { basename, extname, join } from 'node:path';
 import { benchNameFrom, isBenchName } from '../messages/topics.ts';
 import { complain } from './complain.ts';
 import { startProgress } from './progress.ts';
-import { withAgents } from './road.ts';
+import { roadProblem, withAgents, type RoadOptions } from './road.ts';
 import { FolderProblem, openRunFolder, type RunFolder } from './run/folder.ts';
 import { finishMeasures } from './run/measure-report.ts';
 import { startMeasures, takeTick } from './run/measure.ts';
@@ -19,8 +19,7 @@ import type { Trial } from './trial/schema.ts';
 import { version } from './version.ts';
 import { runYardsticks } from './yardsticks.ts';
 
-export interface BenchOptions {
-  readonly inProcess?: boolean;
+export interface BenchOptions extends RoadOptions {
   readonly out?: string;
   readonly seed?: number;
   readonly set: readonly string[];
@@ -58,6 +57,11 @@ export async function runBench(trialPath: string, options: BenchOptions): Promis
   const bench = options.bench ?? name;
   if (!isBenchName(bench)) {
     complain([`--bench ${bench}: must be lower-case letters, digits, - or _, 64 at most`]);
+    return EXIT.usage;
+  }
+  const problem = roadProblem(options, loaded.trial);
+  if (problem !== null) {
+    complain([problem]);
     return EXIT.usage;
   }
   const outcomes: Outcome[] = [];

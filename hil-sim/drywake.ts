@@ -19,8 +19,7 @@ const NOT_BUILT_COMMANDS: Record<string, string> = {
 };
 
 const NOT_BUILT_BENCH_OPTIONS = [
-  '--pace <factor>', '--broker <url>', '--compare <what>', '--against <run>',
-  '--watch', '--leave <name>', '--restart', '--explain <what>',
+  '--compare <what>', '--against <run>', '--watch', '--explain <what>',
 ];
 
 function seedNumber(text: string): number {
@@ -29,6 +28,12 @@ function seedNumber(text: string): number {
     throw new InvalidArgumentError('a seed is a whole number from 0 to 4294967295.');
   }
   return seed;
+}
+
+function paceFactor(text: string): number {
+  const pace = Number(text);
+  if (!(pace >= 0.01 && pace <= 10_000)) throw new InvalidArgumentError('a pace is a number from 0.01 to 10000.');
+  return pace;
 }
 
 /** `1..10`, or `3,5,8`. */
@@ -65,6 +70,11 @@ const bench = program
   .option('--set <path=value>', 'change a key of the trial, e.g. mission.sharing=solo; repeatable',
     (value: string, earlier: string[]) => [...earlier, value], [] as string[])
   .option('--bench <name>', 'name of the bench in topics (default: the trial\'s file name)')
+  .option('--broker <url>', 'an outside broker in place of the embedded one, e.g. mqtt://192.0.2.7:1883')
+  .option('--pace <factor>', 'against the wall clock, so many times as fast; late steers are counted', paceFactor)
+  .option('--leave <name>', 'start no agent for this vehicle: wait for a foreign one; repeatable',
+    (value: string, earlier: string[]) => [...earlier, value], [] as string[])
+  .option('--restart', 'start a dead agent again, from its memory if it has one')
   .option('--json', 'print outcome.json, and nothing else, on standard output')
   .addHelpText('after', '\nExit status: 0 limits met, 1 a limit not met, 2 bad input or usage, 3 the bench itself failed.\n'
     + '\nExamples:\n  drywake bench configs/trials/marrow-bank.yaml\n'

@@ -4,7 +4,8 @@
  * again for the tick that it answered last, the agent gives the same steer.
  *
  * Ticks follow one another without a hole: the first sense may carry any tick (an agent can be started
- * again on the way), each later one the next.
+ * again on the way), each later one the next; after a lost connection one hole is allowed, since a sea
+ * that keeps time does not wait.
  */
 import { readMessage, writeMessage } from '../messages/codec.ts';
 import { CHECKPOINT_S } from '../messages/memory.ts';
@@ -30,6 +31,8 @@ export interface Answering {
   state: State | null;
   lastTick: number;
   lastSteer: Uint8Array;
+  /** Whether the next sense may leave ticks out. */
+  mayJump: boolean;
   refused: number;
   agentState: Status['state'];
 }
@@ -37,7 +40,8 @@ export interface Answering {
 /** An agent that waits for its mission; with a memory it starts from what that holds, if anything. */
 export function startAnswering(vehicle: string, memory: Memory | null = null): Answering {
   return {
-    vehicle, memory, mission: null, state: null, lastTick: -1, lastSteer: new Uint8Array(0), refused: 0, agentState: null,
+    vehicle, memory, mission: null, state: null, lastTick: -1, lastSteer: new Uint8Array(0), mayJump: false, refused: 0,
+    agentState: null,
   };
 }
 
@@ -73,8 +77,10 @@ export function takeSense(answering: Answering, bytes: Uint8Array): Uint8Array |
   const sense = reading.value;
   if (answering.lastTick >= 0) {
     if (sense.tick === answering.lastTick) return answering.lastSteer;
-    if (sense.tick !== answering.lastTick + 1) return refuse(answering);
+    if (sense.tick < answering.lastTick) return refuse(answering);
+    if (sense.tick > answering.lastTick + 1 && !answering.mayJump) return refuse(answering);
   }
+  answering.mayJump = false;
   const steer = normalise(step(answering.state, normalise(sense)));
   answering.lastTick = sense.tick;
   answering.lastSteer = writeMessage(steer);

@@ -6,14 +6,16 @@
  * died, and leaves an interrupt from the keyboard to it.
  */
 import { parseArgs } from 'node:util';
+import { name } from '../messages/fields.ts';
 import { isBenchName } from '../messages/topics.ts';
 import { fileMemory } from './file-memory.ts';
 import { runShell, type ShellOptions } from './shell.ts';
 
+const USAGE = '--vehicle NAME --bench NAME --broker URL [--qos 0|1] [--memory FILE [--resume]]';
 const EXIT = { ended: 0, usage: 2, failed: 3 } as const;
 
 function usage(message: string): never {
-  process.stderr.write(`agent: ${message}\nusage: --vehicle NAME --bench NAME --broker URL [--qos 0|1] [--memory FILE [--resume]]\n`);
+  process.stderr.write(`agent: ${message}\nusage: ${USAGE}\n`);
   process.exit(EXIT.usage);
 }
 
@@ -37,7 +39,7 @@ function readArguments(): Arguments {
     return usage(error instanceof Error ? error.message : String(error));
   }
   const { vehicle, bench, broker, qos = '0', memory, resume = false, tied = false } = values;
-  if (vehicle === undefined || !/^[a-z][a-z0-9-]{0,23}$/.test(vehicle)) return usage('--vehicle must be a vehicle\'s name');
+  if (vehicle === undefined || !name.safeParse(vehicle).success) return usage('--vehicle must be a vehicle\'s name');
   if (bench === undefined || !isBenchName(bench)) return usage('--bench must be a bench\'s name');
   if (broker === undefined || !isBrokerUrl(broker)) return usage('--broker must be a URL like mqtt://127.0.0.1:1883');
   if (qos !== '0' && qos !== '1') return usage('--qos must be 0 or 1');

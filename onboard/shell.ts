@@ -128,6 +128,7 @@ function keepConnected({ client, topics, answering, changed, ended, options }: S
     clearTimeout(lost);
     lost = undefined;
     noDelay(client);
+    answering.mayJump = true;
     client.subscribe([topics.mission, topics.sense, topics.tick], { qos: options.qos });
     changed.next();
   });

@@ -16,7 +16,8 @@ import { seaTopic, vehicleTopic } from '../../messages/topics.ts';
 import type { Bus, Qos } from '../shell/bus.ts';
 import { lockstepAgents, type LockstepAgents } from '../shell/lockstep.ts';
 import { AgentTrouble, watchStatuses, type Readiness } from '../shell/readiness.ts';
-import { RunFailure, type Agents } from './run-trial.ts';
+import type { InterruptibleAgents } from './paced.ts';
+import { RunFailure } from './run-trial.ts';
 
 export { AgentTrouble };
 
@@ -34,7 +35,7 @@ export interface ProcessOptions {
   readonly qos?: Qos;
   /** Vehicles for which no agent is started: foreign ones are waited for, however long it takes. */
   readonly leave?: readonly string[];
-  /** How long a steer is waited for; ten seconds unless given. */
+  /** How long a steer is waited for; ten seconds unless given; Infinity for ever. */
   readonly giveUpMs?: number;
   /** Agents keep their memory in files, for reboots that need it. */
   readonly keepsMemory?: boolean;
@@ -48,7 +49,7 @@ export interface ProcessOptions {
   readonly signal?: AbortSignal;
 }
 
-export interface ProcessAgents extends LockstepAgents, Agents {
+export interface ProcessAgents extends LockstepAgents, InterruptibleAgents {
   /** Process ids of the agents that run, by vehicle. */
   pids(): ReadonlyMap<string, number>;
 }

@@ -48,13 +48,16 @@ export type RunResult =
       readonly wallS: number;
     };
 
-/** Ticks between two looks at progress and at the event loop when nobody has to be waited for. */
+/** Ticks between two breaths of the event loop when nobody has to be waited for. */
 const BREATH_TICKS = 512;
+/** Wall time between two words on progress where agents are waited for. */
+const PROGRESS_MS = 500;
 
 export async function runTrial(options: RunOptions): Promise<RunResult> {
   const { sea, agents, ticks, tickS, watchers } = options;
   const digest = startDigest();
   const startedMs = performance.now();
+  let toldMs = startedMs;
   const wallS = (): number => (performance.now() - startedMs) / 1000;
   try {
     while (sea.tick < ticks) {
@@ -70,11 +73,12 @@ export async function runTrial(options: RunOptions): Promise<RunResult> {
       };
       for (const watcher of watchers) watcher.take(record);
       sea.advance(steers);
-      if (tick % BREATH_TICKS === 0) {
+      if (tick % BREATH_TICKS === 0 || performance.now() - toldMs > PROGRESS_MS) {
+        toldMs = performance.now();
         options.onProgress?.(tick, ticks);
         await new Promise((resolve) => { setImmediate(resolve); });
-        if (options.signal?.aborted === true) throw new RunFailure('stopped by a signal', tick);
       }
+      if (options.signal?.aborted === true) throw new RunFailure('stopped by a signal', tick);
     }
   } catch (error) {
     const failure = error instanceof RunFailure

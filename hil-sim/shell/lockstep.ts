@@ -8,6 +8,7 @@ import { normalise } from '../../messages/normalise.ts';
 import type { Sense } from '../../messages/sense.ts';
 import { steerSchema, type Steer } from '../../messages/steer.ts';
 import { everyVehicle, readTopic, vehicleTopic } from '../../messages/topics.ts';
+import type { InterruptibleAgents } from '../run/paced.ts';
 import { RunFailure, type Agents } from '../run/run-trial.ts';
 import type { Bus } from './bus.ts';
 
@@ -21,7 +22,7 @@ export const STEER_REFUSALS = [
 export type SteerRefusal = (typeof STEER_REFUSALS)[number];
 
 /** All of Agents but starting and ending them, which a bus cannot do. */
-export interface LockstepAgents extends Omit<Agents, 'restart'> {
+export interface LockstepAgents extends Omit<InterruptibleAgents, 'restart'> {
   /** Ends the run: the tick that is being waited for, or else the next one, fails with this reason. */
   fail(reason: string, vehicle: string | null): void;
   /** Steers refused so far, by reason. */
@@ -84,6 +85,7 @@ export async function lockstepAgents(options: LockstepOptions): Promise<Lockstep
       lockstep.failed ??= { reason, vehicle };
       if (lockstep.waiting !== null) giveUp(lockstep, lockstep.waiting);
     },
+    settle: (standIns) => { settle(lockstep, standIns); },
     close() { clearInterval(watch); },
   };
 }
@@ -109,6 +111,22 @@ function ask(lockstep: Lockstep, senses: readonly (Sense | null)[]): Answer {
   });
 }
 
+/** Ends the waiting with what is there, and stand-ins for the rest. */
+function settle(lockstep: Lockstep, standIns: readonly (Steer | null)[]): void {
+  const { waiting } = lockstep;
+  if (waiting === null) return;
+  for (let index = 0; index < waiting.steers.length; index++) {
+    if (isMissing(waiting, index)) waiting.steers[index] = standIns[index] ?? null;
+  }
+  finish(lockstep, waiting);
+}
+
+function finish(lockstep: Lockstep, waiting: Waiting): void {
+  lockstep.waiting = null;
+  lockstep.lastTick = waiting.tick;
+  waiting.resolve(waiting.steers);
+}
+
 /** Takes what came on a steer topic, or answers why it is refused. */
 function take(lockstep: Lockstep, topic: string, bytes: Uint8Array): SteerRefusal | null {
   const { waiting, options: { vehicles } } = lockstep;
@@ -126,10 +144,7 @@ function take(lockstep: Lockstep, topic: string, bytes: Uint8Array): SteerRefusa
   if (steer.heard.length !== sense.heard.length) return 'fates do not fit';
   waiting.steers[index] = steer;
   waiting.missing -= 1;
-  if (waiting.missing > 0) return null;
-  lockstep.waiting = null;
-  lockstep.lastTick = waiting.tick;
-  waiting.resolve(waiting.steers);
+  if (waiting.missing === 0) finish(lockstep, waiting);
   return null;
 }
 

@@ -1,4 +1,5 @@
 /** Runs with agents as processes, for tests: broker, agents, run, and all of it gone afterwards. */
+import { pacedAgents } from '../../hil-sim/run/paced.ts';
 import { processAgents, type ProcessAgents, type ProcessOptions } from '../../hil-sim/run/processes.ts';
 import type { RunResult, Watcher } from '../../hil-sim/run/run-trial.ts';
 import { startBroker } from '../../hil-sim/shell/broker.ts';
@@ -12,6 +13,7 @@ export interface ProcessRun {
   readonly ticks: number;
   readonly qos?: Qos;
   readonly bus?: Bus;
+  readonly pace?: number;
   readonly more?: Partial<ProcessOptions>;
   readonly watchers?: readonly Watcher[];
   /** Called when all agents are ready, before the first tick. */
@@ -37,7 +39,8 @@ export async function runOverProcesses(run: ProcessRun): Promise<ProcessRunResul
     try {
       await run.onReady?.(agents, bus);
       const pids = [...agents.pids().values()];
-      const result = await runOf({ trial, ticks, agents, watchers });
+      const paced = run.pace === undefined ? agents : pacedAgents(agents, { pace: run.pace, tickS: trial.tick });
+      const result = await runOf({ trial, ticks, agents: paced, watchers });
       return { result, refused: { ...agents.refused }, pids };
     } finally {
       await agents.close();

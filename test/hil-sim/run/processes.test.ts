@@ -79,6 +79,25 @@ describe('an agent that falls silent', () => {
   });
 });
 
+describe('a run against the wall clock', () => {
+  it('goes on past an agent that is stopped, counts its late ticks, and takes it back', async () => {
+    let fleet: ProcessAgents | undefined;
+    const late: number[] = [];
+    const { result } = await runOverProcesses({
+      trial, ticks: 160, pace: 50, onReady: (agents) => { fleet = agents; },
+      watchers: [{ take: ({ tick, steers }) => { if (steers[0]!.tick !== tick) late.push(tick); } }, atTick(60, () => {
+        const pid = fleet!.pids().get('amber')!;
+        process.kill(pid, 'SIGSTOP');
+        void sleep(600).then(() => { process.kill(pid, 'SIGCONT'); });
+      })],
+    });
+    expect(result).toMatchObject({ ok: true, ticks: 160 });
+    expect(result.wallS).toBeGreaterThan(159 / 50);
+    expect(late.filter((tick) => tick > 60).length).toBeGreaterThan(15);
+    expect(late.filter((tick) => tick > 140)).toEqual([]);
+  });
+});
+
 describe('an agent that dies', () => {
   it('ends the run at once with its name, the tick and how, and takes the others with it', async () => {
     let fleet: ProcessAgents | undefined;
