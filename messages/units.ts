@@ -33,8 +33,7 @@ const UNITS = {
 export type Dimension = keyof typeof UNITS;
 
 export type QuantityReading =
-  | { readonly ok: true; readonly value: number }
-  | { readonly ok: false; readonly reason: string };
+  { readonly ok: true; readonly value: number } | { readonly ok: false; readonly reason: string };
 
 const NUMBER = '[+-]?(?:\\d+\\.?\\d*|\\.\\d+)(?:[eE][+-]?\\d+)?';
 const PART = new RegExp(`^\\s*(${NUMBER})\\s*([^\\s\\d.+-][^\\s\\d]*)`);
@@ -56,7 +55,10 @@ function example(dimension: Dimension): string {
  */
 export function parseQuantity(text: string, dimension: Dimension): QuantityReading {
   const factors: Record<string, number> = UNITS[dimension];
-  const refuse = (found: string): QuantityReading => ({ ok: false, reason: `${found}, but must be ${example(dimension)}` });
+  const refuse = (found: string): QuantityReading => ({
+    ok: false,
+    reason: `${found}, but must be ${example(dimension)}`,
+  });
   if (text.length > LONGEST) return refuse('is too long');
   let rest = text.trim();
   let total = 0;
@@ -64,7 +66,9 @@ export function parseQuantity(text: string, dimension: Dimension): QuantityReadi
   while (rest !== '' || parts === 0) {
     const match = PART.exec(rest);
     if (match === null) {
-      return refuse(new RegExp(`^${NUMBER}$`).test(rest) ? `'${text}' has no unit` : `'${text}' is not a quantity`);
+      return refuse(
+        new RegExp(`^${NUMBER}$`).test(rest) ? `'${text}' has no unit` : `'${text}' is not a quantity`,
+      );
     }
     const unit = match[2]!;
     const factor = Object.hasOwn(factors, unit) ? factors[unit] : undefined;
@@ -102,9 +106,10 @@ function textIn(value: number, unit: string, dimension: Dimension): string | nul
 /** A text for `value` (finite, SI) that `parseQuantity` turns back into the identical double. */
 export function formatQuantity(value: number, dimension: Dimension): string {
   const plain = value + 0;
-  for (const unit of plain === 0 ? [] : FRIENDLY[dimension] ?? []) {
+  for (const unit of plain === 0 ? [] : (FRIENDLY[dimension] ?? [])) {
     const text = textIn(plain, unit, dimension);
-    if (text !== null && text.replace(/[^\d]/g, '').length <= FEW_DIGITS && !text.startsWith('0.')) return text;
+    if (text !== null && text.replace(/[^\d]/g, '').length <= FEW_DIGITS && !text.startsWith('0.'))
+      return text;
   }
   for (const unit of unitsOf(dimension)) {
     const text = textIn(plain, unit, dimension);

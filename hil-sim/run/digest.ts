@@ -1,6 +1,7 @@
 /**
  * The digest of a run: SHA-256, lower-case hex, over tick by tick, vehicle in fleet order, sense then
- * steer, each in its packed form; a vehicle whose agent is down adds nothing. A promise for one Node version, since sin, cos and their kin may
+ * steer, each in its packed form; a vehicle whose agent is down adds nothing. A promise for one Node
+ * version, since sin, cos and their kin may
  * differ in the last bit between versions.
  */
 import { createHash } from 'node:crypto';

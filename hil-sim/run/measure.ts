@@ -4,7 +4,8 @@
  * A vehicle named in `limits.except` does not count for forming up, the loop, gaps, currents, maps and
  * positions; the others' target gaps are those of the fleet without it. It always counts for
  * separation, frames and energy. From `formUp_s` on every counted vehicle counts at every tick,
- * whatever state it claims, until the script ends its part (`parts.ts`). Separation is in space (depth included). Every array is sized at start.
+ * whatever state it claims, until the script ends its part (`parts.ts`). Separation is in
+ * space (depth included). Every array is sized at start.
  */
 import { assert } from '../../messages/assert.ts';
 import type { MapMessage, Steer } from '../../messages/steer.ts';
@@ -131,9 +132,10 @@ export function takeTick(m: Measures, record: TickRecord): void {
   if (timeS >= m.part.changesS) renewPart(m, timeS);
   const { counted, gaps } = m.part;
   measureGaps(gaps, m.phases);
-  const step = counted.length === 0
-    ? 'out'
-    : judgeFormedUp(m.formed, counted, { timeS, distanceM: m.distanceM, gapError: gaps.error });
+  const step =
+    counted.length === 0
+      ? 'out'
+      : judgeFormedUp(m.formed, counted, { timeS, distanceM: m.distanceM, gapError: gaps.error });
   if (step === 'begins') beginAfresh(m);
   tallyVehicles(m, record, step !== 'out');
   tallyMaps(m, record, step !== 'out');
@@ -147,11 +149,15 @@ export function takeTick(m: Measures, record: TickRecord): void {
 function renewPart(m: Measures, timeS: number): void {
   const { trial, names, except, outSpans: spans, isCounted, part } = m;
   const counted = names.flatMap((name, index) =>
-    (except.includes(name) || isOut(spans, index, timeS) ? [] : [index]));
+    except.includes(name) || isOut(spans, index, timeS) ? [] : [index],
+  );
   isCounted.fill(0);
   for (const index of counted) isCounted[index] = 1;
   part.counted = Int32Array.from(counted);
-  part.gaps = startGaps(trial.mission.spacing, counted, { fleetSize: names.length, lengthM: m.track.lengthM });
+  part.gaps = startGaps(trial.mission.spacing, counted, {
+    fleetSize: names.length,
+    lengthM: m.track.lengthM,
+  });
   part.changesS = nextChangeS(spans, timeS);
 }
 
@@ -183,7 +189,8 @@ function tallyVehicles(m: Measures, record: TickRecord, counts: boolean): void {
     keepPoint(series, index, timeS, eastM, northM);
     m.energyJ[index] = truth.energyJ[index]!;
     m.battery[index] = truth.battery[index]!;
-    if (steer !== null) tallyBelief(m, record, { index, at, steer, counts: counts && m.isCounted[index] === 1 });
+    if (steer !== null)
+      tallyBelief(m, record, { index, at, steer, counts: counts && m.isCounted[index] === 1 });
     if (m.isCounted[index] === 0) continue;
     const gapError = Math.abs(m.part.gaps.error[index]!);
     addToBin(series, 'gap', at, gapError * gapError);
@@ -196,7 +203,9 @@ function tallyVehicles(m: Measures, record: TickRecord, counts: boolean): void {
 
 /** What a vehicle believes against what is; an agent that is down believes nothing. */
 function tallyBelief(
-  m: Measures, record: TickRecord, of: { index: number; at: number; steer: Steer; counts: boolean },
+  m: Measures,
+  record: TickRecord,
+  of: { index: number; at: number; steer: Steer; counts: boolean },
 ): void {
   const { truth, timeS } = record;
   const { index, at, steer } = of;
@@ -205,7 +214,10 @@ function tallyBelief(
     estimate.currentEast_mps - truth.currentEastMps[index]!,
     estimate.currentNorth_mps - truth.currentNorthMps[index]!,
   );
-  const position2 = normSquare(estimate.east_m - truth.eastM[index]!, estimate.north_m - truth.northM[index]!);
+  const position2 = normSquare(
+    estimate.east_m - truth.eastM[index]!,
+    estimate.north_m - truth.northM[index]!,
+  );
   addToBin(m.series, 'current', at, current2);
   addToBin(m.series, 'position', at, position2);
   if (steer.tick !== record.tick) m.lateTicks[index]! += 1;
@@ -221,7 +233,7 @@ function normSquare(east: number, north: number): number {
 function tallyMaps(m: Measures, record: TickRecord, counts: boolean): void {
   let given = 0;
   for (let index = 0; index < m.names.length; index++) {
-    const map = m.isCounted[index] === 1 ? record.steers[index]?.map ?? null : null;
+    const map = m.isCounted[index] === 1 ? (record.steers[index]?.map ?? null) : null;
     m.givenMaps[index] = map;
     if (map !== null) given += 1;
   }

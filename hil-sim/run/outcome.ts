@@ -76,7 +76,9 @@ export function buildOutcome(input: OutcomeInput): Outcome {
     ...(report.excepted.length > 0 ? { except: [...report.excepted] } : {}),
     measures: { ...report.values },
     ...(why === null ? {} : { why }),
-    ...(input.yardsticks === undefined ? {} : { yardsticks: { central: { ...input.yardsticks.central }, known: { ...input.yardsticks.known } } }),
+    ...(input.yardsticks === undefined
+      ? {}
+      : { yardsticks: { central: { ...input.yardsticks.central }, known: { ...input.yardsticks.known } } }),
     digest: input.digest,
     ticks: input.ticks,
     wall_s: input.wall_s,

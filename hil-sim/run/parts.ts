@@ -23,12 +23,17 @@ export function outSpans(trial: Trial, lengthM: number): OutSpan[] {
   const lapS = (index: number): number => lengthM / vehicles[index]!.speed.cruise;
   const ordered = trial.orders
     .filter(({ order }) => order === 'home' || order === 'surface')
-    .flatMap(({ at, vehicle }) => vehicleIndexes(trial, vehicle).map((index) => ({ index, fromS: at, untilS: Infinity })));
+    .flatMap(({ at, vehicle }) =>
+      vehicleIndexes(trial, vehicle).map((index) => ({ index, fromS: at, untilS: Infinity })),
+    );
   const rebooted = trial.faults.flatMap((fault) => {
     const spanS = fault.for ?? Infinity;
     if (fault.kind !== 'reboot' || spanS <= LONG_REBOOT_S) return [];
-    return vehicleIndexes(trial, fault.vehicle)
-      .map((index) => ({ index, fromS: fault.at + lapS(index), untilS: fault.at + spanS + lapS(index) }));
+    return vehicleIndexes(trial, fault.vehicle).map((index) => ({
+      index,
+      fromS: fault.at + lapS(index),
+      untilS: fault.at + spanS + lapS(index),
+    }));
   });
   return [...ordered, ...rebooted];
 }

@@ -34,7 +34,11 @@ export function startLinks(pairs: number): LinkState {
 }
 
 /** Whether the pair's chain is bad for its next frame. */
-function stepChain(links: LinkState, pair: number, chance: { link: LinkPlan; draw: number; isFirst: boolean }): boolean {
+function stepChain(
+  links: LinkState,
+  pair: number,
+  chance: { link: LinkPlan; draw: number; isFirst: boolean },
+): boolean {
   const { loss, burst } = chance.link;
   let bad: boolean;
   if (burst <= 1 || loss <= 0 || loss >= 1 || chance.isFirst) {
@@ -59,7 +63,8 @@ export function nextFate(
   links.sent[pair] = count + 1;
   const lossDraw = uniform(draw, { entity, purpose: PURPOSE.linkLoss, count });
   fate.lost = stepChain(links, pair, { link, draw: lossDraw, isFirst: count === 0 });
-  fate.garbled = link.garble > 0 && uniform(draw, { entity, purpose: PURPOSE.linkGarble, count }) < link.garble;
+  fate.garbled =
+    link.garble > 0 && uniform(draw, { entity, purpose: PURPOSE.linkGarble, count }) < link.garble;
   fate.delayS = link.delayS;
   if (link.jitterS > 0) {
     normalPair(draw, { entity, purpose: PURPOSE.linkJitter, count }, scratch);

@@ -7,14 +7,10 @@ import { SETTINGS, type Setting, type SettingKey } from '../../messages/settings
 import { formatQuantity, type Dimension } from '../../messages/units.ts';
 import type { Path } from './documents.ts';
 import { checkScript } from './fault-checks.ts';
+import type { Finding } from './finding.ts';
 import { offsetsOf } from './missions.ts';
 import type { Trial, TrialCurrent } from './schema.ts';
 import { fullVehicles } from './vehicles.ts';
-
-export interface Finding {
-  readonly path: Path;
-  readonly message: string;
-}
 
 /** Slow sound makes the longest travel time: cold, fresh water (METHODS A1 spans 1402 to 1560 m/s). */
 const SOUND_LEAST_MPS = 1400;
@@ -56,29 +52,46 @@ function checkFleet(trial: Trial): Finding[] {
     const at = (...keys: string[]): Path => ['fleet', 'vehicles', index, ...keys];
     const first = seen.get(vehicle.name);
     if (first !== undefined) {
-      findings.push({ path: at('name'), message: `is ${vehicle.name}, which vehicle ${first + 1} of the list has already, but must be unique` });
+      findings.push({
+        path: at('name'),
+        message: `is ${vehicle.name}, which vehicle ${first + 1} of the list has already, but must be unique`,
+      });
     }
     seen.set(vehicle.name, index);
     const { min, cruise, max } = vehicle.speed;
     if (!(min <= cruise && cruise <= max)) {
       findings.push({
         path: at('speed'),
-        message: `has min ${say(min, 'speed')}, cruise ${say(cruise, 'speed')}, max ${say(max, 'speed')}, but must be in that order`,
+        message: `has min ${say(min, 'speed')}, cruise ${say(cruise, 'speed')}, ` +
+          `max ${say(max, 'speed')}, but must be in that order`,
       });
     }
     if (!(vehicle.fix.every >= trial.tick)) {
-      findings.push({ path: at('fix', 'every'), message: `is ${say(vehicle.fix.every, 'time')}, but must be at least a tick of ${say(trial.tick, 'time')}` });
+      findings.push({
+        path: at('fix', 'every'),
+        message: `is ${say(vehicle.fix.every, 'time')}, but must be at least a tick of ${say(trial.tick, 'time')}`,
+      });
     }
     if (!(vehicle.fix.latency < vehicle.fix.every)) {
-      findings.push({ path: at('fix', 'latency'), message: `is ${say(vehicle.fix.latency, 'time')}, but must be less than the ${say(vehicle.fix.every, 'time')} between fixes` });
+      findings.push({
+        path: at('fix', 'latency'),
+        message: `is ${say(vehicle.fix.latency, 'time')}, ` +
+          `but must be less than the ${say(vehicle.fix.every, 'time')} between fixes`,
+      });
     }
   });
   const offsets = offsetsOf(trial);
   if (offsets.length !== trial.fleet.vehicles.length) {
-    findings.push({ path: ['mission', 'spacing'], message: `has ${offsets.length} offsets, but must have one per vehicle: ${trial.fleet.vehicles.length}` });
+    findings.push({
+      path: ['mission', 'spacing'],
+      message: `has ${offsets.length} offsets, but must have one per vehicle: ${trial.fleet.vehicles.length}`,
+    });
   }
   if (new Set(offsets).size !== offsets.length) {
-    findings.push({ path: ['mission', 'spacing'], message: 'has the same offset twice, but two vehicles cannot share a place' });
+    findings.push({
+      path: ['mission', 'spacing'],
+      message: 'has the same offset twice, but two vehicles cannot share a place',
+    });
   }
   return findings;
 }
@@ -89,13 +102,20 @@ function checkPlaces(trial: Trial): Finding[] {
   const mustLieIn = (path: Path, what: string, circle: Circle): void => {
     const reach = distance(circle.centre, keepIn.centre) + circle.radius;
     if (reach > keepIn.radius) {
-      findings.push({ path, message: `${what} reaches ${say(reach, 'length')} from the centre of keepIn, but must stay within its ${say(keepIn.radius, 'length')}` });
+      findings.push({
+        path,
+        message: `${what} reaches ${say(reach, 'length')} from the centre of keepIn, ` +
+          `but must stay within its ${say(keepIn.radius, 'length')}`,
+      });
     }
   };
   const mustMiss = (path: Path, what: string, place: { east: number; north: number }): void => {
     keepOut.forEach((area, index) => {
       if (distance(place, area.centre) < area.radius) {
-        findings.push({ path, message: `${what} lies inside mission.keepOut.${index}, but must lie outside` });
+        findings.push({
+          path,
+          message: `${what} lies inside mission.keepOut.${index}, but must lie outside`,
+        });
       }
     });
   };
@@ -109,13 +129,24 @@ function checkPlaces(trial: Trial): Finding[] {
   });
   keepOut.forEach((area, index) => {
     const between = distance(area.centre, loop.centre);
-    if (between + area.radius > loop.radius && between < loop.radius + area.radius && Math.abs(between - loop.radius) < area.radius) {
-      findings.push({ path: ['mission', 'keepOut', index], message: 'covers part of the loop, but the loop must stay clear of it' });
+    if (
+      between + area.radius > loop.radius &&
+      between < loop.radius + area.radius &&
+      Math.abs(between - loop.radius) < area.radius
+    ) {
+      findings.push({
+        path: ['mission', 'keepOut', index],
+        message: 'covers part of the loop, but the loop must stay clear of it',
+      });
     }
   });
   const reach = distance(keepIn.centre, { east: 0, north: 0 }) + keepIn.radius;
   if (reach > FRAME_POSITION_MAX_M) {
-    findings.push({ path: ['mission', 'keepIn'], message: `reaches ${say(reach, 'length')} from the datum, but a frame can say positions to ${say(FRAME_POSITION_MAX_M, 'length')}: move the datum or shrink the area` });
+    findings.push({
+      path: ['mission', 'keepIn'],
+      message: `reaches ${say(reach, 'length')} from the datum, ` +
+        `but a frame can say positions to ${say(FRAME_POSITION_MAX_M, 'length')}: move the datum or shrink the area`,
+    });
   }
   return findings;
 }
@@ -123,11 +154,16 @@ function checkPlaces(trial: Trial): Finding[] {
 /** The fastest that a current of this kind flows anywhere inside keepIn. */
 function driftMost(current: TrialCurrent, keepIn: Circle): number {
   switch (current.kind) {
-    case 'uniform': return current.drift;
-    case 'tide': return Math.max(Math.abs(current.major), Math.abs(current.minor));
-    case 'eddy': return current.peak;
+    case 'uniform':
+      return current.drift;
+    case 'tide':
+      return Math.max(Math.abs(current.major), Math.abs(current.minor));
+    case 'eddy':
+      return current.peak;
     case 'shear': {
-      const off = Math.abs(keepIn.centre.east * Math.cos(current.bearing) - keepIn.centre.north * Math.sin(current.bearing));
+      const off = Math.abs(
+        keepIn.centre.east * Math.cos(current.bearing) - keepIn.centre.north * Math.sin(current.bearing),
+      );
       return (Math.abs(current.gradient) / current.over) * (off + keepIn.radius);
     }
   }
@@ -145,14 +181,17 @@ function checkLoop(trial: Trial): Finding[] {
     if (!(loop.radius >= radiusLeast)) {
       findings.push({
         path: ['mission', 'loop', 'radius'],
-        message: `is ${say(loop.radius, 'length')}, too tight for ${vehicle.name}: with ${say(v, 'speed')} cruise, ${say(driftMps, 'speed')} of current and `
-          + `${say(vehicle.turnRate, 'angleRate')} of turn it must be at least ${say(radiusLeast, 'length')}`,
+        message:
+          `is ${say(loop.radius, 'length')}, too tight for ${vehicle.name}: ` +
+          `with ${say(v, 'speed')} cruise, ${say(driftMps, 'speed')} of current and ` +
+          `${say(vehicle.turnRate, 'angleRate')} of turn it must be at least ${say(radiusLeast, 'length')}`,
       });
     }
     if (!(driftMps < vehicle.speed.max)) {
       findings.push({
         path: ['fleet', 'vehicles', index, 'speed'],
-        message: `has a max of ${say(vehicle.speed.max, 'speed')}, but the currents on the loop may add up to ${say(driftMps, 'speed')}, which it must exceed`,
+        message: `has a max of ${say(vehicle.speed.max, 'speed')}, ` +
+          `but the currents on the loop may add up to ${say(driftMps, 'speed')}, which it must exceed`,
       });
     }
   });
@@ -166,10 +205,16 @@ function isWhole(ratio: number): boolean {
 function checkTimes(trial: Trial): Finding[] {
   const findings: Finding[] = [];
   if (!isWhole(ROW_S / trial.tick) || !isWhole(MINUTE_S / trial.tick)) {
-    findings.push({ path: ['tick'], message: `is ${say(trial.tick, 'time')}, but must divide 10 s, the step of tracks.csv` });
+    findings.push({
+      path: ['tick'],
+      message: `is ${say(trial.tick, 'time')}, but must divide 10 s, the step of tracks.csv`,
+    });
   }
   if (!isWhole(trial.duration / trial.tick)) {
-    findings.push({ path: ['duration'], message: `is ${say(trial.duration, 'time')}, but must be a whole number of ticks of ${say(trial.tick, 'time')}` });
+    findings.push({
+      path: ['duration'],
+      message: `is ${say(trial.duration, 'time')}, but must be a whole number of ticks of ${say(trial.tick, 'time')}`,
+    });
   }
   return findings;
 }
@@ -184,12 +229,17 @@ function checkModem(trial: Trial): Finding[] {
   if (!(modem.slot >= needS)) {
     findings.push({
       path: ['modem', 'slot'],
-      message: `is ${say(modem.slot, 'time')}, but must hold ${say(modem.turnOn, 'time')} turn-on, ${say(airS, 'time')} air time, ${say(modem.guard, 'time')} guard and `
-        + `${say(travelS, 'time')} travel across keepIn: at least ${say(needS, 'time')}`,
+      message:
+        `is ${say(modem.slot, 'time')}, but must hold ${say(modem.turnOn, 'time')} turn-on, ` +
+        `${say(airS, 'time')} air time, ${say(modem.guard, 'time')} guard and ` +
+        `${say(travelS, 'time')} travel across keepIn: at least ${say(needS, 'time')}`,
     });
   }
   if (modem.frame !== FRAME_BYTES) {
-    findings.push({ path: ['modem', 'frame'], message: `is ${modem.frame} B, but the agents' frame has ${FRAME_BYTES} B` });
+    findings.push({
+      path: ['modem', 'frame'],
+      message: `is ${modem.frame} B, but the agents' frame has ${FRAME_BYTES} B`,
+    });
   }
   return findings;
 }
@@ -197,7 +247,13 @@ function checkModem(trial: Trial): Finding[] {
 function checkSettings(trial: Trial): Finding[] {
   const given = trial.onboard as Record<string, number | undefined>;
   const findings: Finding[] = [];
-  const dimensions: Partial<Record<string, Dimension>> = { s: 'time', m: 'length', mps: 'speed', deg: 'angle', share: 'share' };
+  const dimensions: Partial<Record<string, Dimension>> = {
+    s: 'time',
+    m: 'length',
+    mps: 'speed',
+    deg: 'angle',
+    share: 'share',
+  };
   for (const key of Object.keys(SETTINGS) as SettingKey[]) {
     const setting: Setting = SETTINGS[key];
     const value = given[key];
@@ -207,7 +263,8 @@ function checkSettings(trial: Trial): Finding[] {
     if (!(value >= setting.min * factor && value <= setting.max * factor)) {
       findings.push({
         path: ['onboard', key],
-        message: `is ${say(value, dimension)}, but must be ${say(setting.min * factor, dimension)} to ${say(setting.max * factor, dimension)}: ${setting.says}`,
+        message: `is ${say(value, dimension)}, but must be ${say(setting.min * factor, dimension)} ` +
+          `to ${say(setting.max * factor, dimension)}: ${setting.says}`,
       });
     }
   }
@@ -216,7 +273,14 @@ function checkSettings(trial: Trial): Finding[] {
 
 function checkLimits(trial: Trial): Finding[] {
   const names = trial.fleet.vehicles.map(({ name }) => name);
-  return (trial.limits.except ?? []).flatMap((name, index) => names.includes(name)
-    ? []
-    : [{ path: ['limits', 'except', index], message: `is ${name}, but must be a vehicle of the fleet: ${names.join(', ')}` }]);
+  return (trial.limits.except ?? []).flatMap((name, index) =>
+    names.includes(name)
+      ? []
+      : [
+          {
+            path: ['limits', 'except', index],
+            message: `is ${name}, but must be a vehicle of the fleet: ${names.join(', ')}`,
+          },
+        ],
+  );
 }

@@ -32,7 +32,8 @@ export const pathKey = (path: Path): string => path.join('\0');
 export function placeOf(tree: Tree, path: Path, preferKey = false): Place {
   for (let length = path.length; length >= 0; length--) {
     const key = pathKey(path.slice(0, length));
-    const place = (preferKey && length === path.length ? tree.keyPlaces.get(key) : undefined) ?? tree.places.get(key);
+    const place =
+      (preferKey && length === path.length ? tree.keyPlaces.get(key) : undefined) ?? tree.places.get(key);
     if (place !== undefined) return place;
   }
   return { file: '', line: null, column: null };
@@ -94,7 +95,12 @@ function readFile(path: string, reading: Reading): unknown {
   if (document.contents === null) return report('is empty, but must hold keys and values');
   reading.tree.places.set(pathKey(reading.at), { file, line: 1, column: 1 });
   return walk(document.contents as Node, {
-    ...reading, chain: [...reading.chain, path], file, path, lines, report,
+    ...reading,
+    chain: [...reading.chain, path],
+    file,
+    path,
+    lines,
+    report,
   });
 }
 
@@ -123,12 +129,15 @@ function walk(node: Node | null, walking: Walking): unknown {
       tree.keyPlaces.set(pathKey(path), placeIn(walking, keyNode));
       Object.defineProperty(value, key, {
         value: walkSection(pair.value as Node | null, { ...walking, at: path }),
-        enumerable: true, writable: true, configurable: true,
+        enumerable: true,
+        writable: true,
+        configurable: true,
       });
     }
     return value;
   }
-  if (isSeq(node)) return node.items.map((item, index) => walk(item as Node, { ...walking, at: [...at, index] }));
+  if (isSeq(node))
+    return node.items.map((item, index) => walk(item as Node, { ...walking, at: [...at, index] }));
   if (isScalar(node)) return node.value;
   return walking.report('is an alias, but values are written out here', placeIn(walking, node));
 }
@@ -137,12 +146,17 @@ function walk(node: Node | null, walking: Walking): unknown {
 function walkSection(node: Node | null, walking: Walking): unknown {
   const { at } = walking;
   const isSection = at.length === 1 && SECTIONS.includes(String(at[0]));
-  if (!isSection || node === null || !isScalar(node) || typeof node.value !== 'string') return walk(node, walking);
+  if (!isSection || node === null || !isScalar(node) || typeof node.value !== 'string')
+    return walk(node, walking);
   const before = walking.problems.length;
   const value = readFile(resolve(dirname(walking.path), node.value), walking);
   if (walking.problems.length > before && value === undefined) {
     const place = placeIn(walking, node);
-    walking.problems.push({ ...place, key: at.join('.'), message: `names the file '${node.value}', which cannot be used` });
+    walking.problems.push({
+      ...place,
+      key: at.join('.'),
+      message: `names the file '${node.value}', which cannot be used`,
+    });
   }
   return value;
 }

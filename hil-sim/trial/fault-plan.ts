@@ -7,7 +7,9 @@ import type { Trial } from './schema.ts';
 export function vehicleIndexes(trial: Trial, named: string | readonly string[] | undefined): number[] {
   const fleet = trial.fleet.vehicles.map(({ name }) => name);
   if (named === undefined || named === 'all') return fleet.map((_name, index) => index);
-  return (typeof named === 'string' ? [named] : named).map((name) => fleet.indexOf(name)).filter((index) => index >= 0);
+  return (typeof named === 'string' ? [named] : named)
+    .map((name) => fleet.indexOf(name))
+    .filter((index) => index >= 0);
 }
 
 export function faultPlan(trial: Trial, fault: TrialFault): FaultPlan {
@@ -15,7 +17,10 @@ export function faultPlan(trial: Trial, fault: TrialFault): FaultPlan {
   switch (fault.kind) {
     case 'link':
       return {
-        ...span, kind: 'link', from: vehicleIndexes(trial, fault.from), to: vehicleIndexes(trial, fault.to),
+        ...span,
+        kind: 'link',
+        from: vehicleIndexes(trial, fault.from),
+        to: vehicleIndexes(trial, fault.to),
         change: linkChange(fault),
       };
     case 'compass': {
@@ -25,13 +30,21 @@ export function faultPlan(trial: Trial, fault: TrialFault): FaultPlan {
     }
     case 'log':
       return {
-        ...span, kind: 'log', vehicles: vehicleIndexes(trial, fault.vehicle),
-        how: fault.step !== undefined ? 'step' : 'scale', amount: fault.step ?? fault.scale ?? 0,
+        ...span,
+        kind: 'log',
+        vehicles: vehicleIndexes(trial, fault.vehicle),
+        how: fault.step !== undefined ? 'step' : 'scale',
+        amount: fault.step ?? fault.scale ?? 0,
       };
     case 'fix':
       return { ...span, kind: 'fix', vehicles: vehicleIndexes(trial, fault.vehicle), upset: fixUpset(fault) };
     case 'reboot':
-      return { ...span, kind: 'reboot', vehicles: vehicleIndexes(trial, fault.vehicle), memory: fault.memory };
+      return {
+        ...span,
+        kind: 'reboot',
+        vehicles: vehicleIndexes(trial, fault.vehicle),
+        memory: fault.memory,
+      };
     case 'current':
       return { ...span, kind: 'current', current: addedCurrent(fault) };
   }
@@ -50,15 +63,24 @@ function linkChange(fault: Extract<TrialFault, { kind: 'link' }>): Partial<LinkP
 
 function fixUpset(fault: Extract<TrialFault, { kind: 'fix' }>): Extract<FaultPlan, { kind: 'fix' }>['upset'] {
   if (fault.jump !== undefined) return { how: 'jump', eastM: fault.jump.east, northM: fault.jump.north };
-  if (fault.outliers !== undefined) return { how: 'outliers', share: fault.outliers, sigmaM: fault.outlierSigma ?? 0 };
+  if (fault.outliers !== undefined)
+    return { how: 'outliers', share: fault.outliers, sigmaM: fault.outlierSigma ?? 0 };
   return { how: 'outage' };
 }
 
-function addedCurrent(fault: Extract<TrialFault, { kind: 'current' }>): Extract<FaultPlan, { kind: 'current' }>['current'] {
+function addedCurrent(
+  fault: Extract<TrialFault, { kind: 'current' }>,
+): Extract<FaultPlan, { kind: 'current' }>['current'] {
   const { eddy } = fault;
   if (eddy === undefined) return { kind: 'uniform', setRad: fault.set ?? 0, driftMps: fault.drift ?? 0 };
   return {
-    kind: 'eddy', centreEastM: eddy.centre.east, centreNorthM: eddy.centre.north, radiusM: eddy.radius,
-    peakMps: eddy.peak, turn: eddy.turn, movingSetRad: eddy.moving?.set ?? 0, movingDriftMps: eddy.moving?.drift ?? 0,
+    kind: 'eddy',
+    centreEastM: eddy.centre.east,
+    centreNorthM: eddy.centre.north,
+    radiusM: eddy.radius,
+    peakMps: eddy.peak,
+    turn: eddy.turn,
+    movingSetRad: eddy.moving?.set ?? 0,
+    movingDriftMps: eddy.moving?.drift ?? 0,
   };
 }

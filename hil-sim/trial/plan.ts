@@ -12,7 +12,11 @@ export function seaPlan(trial: Trial): SeaPlan {
     vehicles: fullVehicles(trial).map(vehiclePlan),
     currents: water.currents.map(currentPlan),
     faults: trial.faults.map((fault) => faultPlan(trial, fault)),
-    orders: trial.orders.map(({ at, vehicle, order }) => ({ atS: at, vehicles: vehicleIndexes(trial, vehicle), order })),
+    orders: trial.orders.map(({ at, vehicle, order }) => ({
+      atS: at,
+      vehicles: vehicleIndexes(trial, vehicle),
+      order,
+    })),
     modem: {
       frameBytes: modem.frame,
       bitRateBps: modem.bitRate,
@@ -71,14 +75,23 @@ function currentPlan(current: TrialCurrent): CurrentPlan {
       return { kind: 'uniform', setRad: current.set, driftMps: current.drift };
     case 'tide':
       return {
-        kind: 'tide', periodS: current.period, majorMps: current.major, minorMps: current.minor,
-        bearingRad: current.bearing, phaseRad: current.phase,
+        kind: 'tide',
+        periodS: current.period,
+        majorMps: current.major,
+        minorMps: current.minor,
+        bearingRad: current.bearing,
+        phaseRad: current.phase,
       };
     case 'eddy':
       return {
-        kind: 'eddy', centreEastM: current.centre.east, centreNorthM: current.centre.north,
-        radiusM: current.radius, peakMps: current.peak, turn: current.turn,
-        movingSetRad: current.moving?.set ?? 0, movingDriftMps: current.moving?.drift ?? 0,
+        kind: 'eddy',
+        centreEastM: current.centre.east,
+        centreNorthM: current.centre.north,
+        radiusM: current.radius,
+        peakMps: current.peak,
+        turn: current.turn,
+        movingSetRad: current.moving?.set ?? 0,
+        movingDriftMps: current.moving?.drift ?? 0,
       };
     case 'shear':
       return { kind: 'shear', bearingRad: current.bearing, gradientPerS: current.gradient / current.over };

@@ -14,9 +14,11 @@ export function applySet(tree: Tree, setting: string, problems: Problem[]): void
   const cut = setting.indexOf('=');
   if (cut < 1) return report('', `has no '=', ${FORM}`);
   const steps = setting.slice(0, cut).trim().split('.');
-  if (steps.some((step) => step === '' || step === '__proto__')) return report('', `has an empty step, ${FORM}`);
+  if (steps.some((step) => step === '' || step === '__proto__'))
+    return report('', `has an empty step, ${FORM}`);
   const document = parseDocument(setting.slice(cut + 1));
-  if (document.errors.length > 0) return report(steps.join('.'), `the value is not YAML: ${document.errors[0]!.message.split('\n')[0]}`);
+  if (document.errors.length > 0)
+    return report(steps.join('.'), `the value is not YAML: ${document.errors[0]!.message.split('\n')[0]}`);
   const value: unknown = document.toJS({ maxAliasCount: 0 });
   const path: (string | number)[] = [];
   let parent: unknown = tree.value;
@@ -25,10 +27,16 @@ export function applySet(tree: Tree, setting: string, problems: Problem[]): void
     const isLast = index === steps.length - 1;
     const key = Array.isArray(parent) ? listIndex(parent, step) : step;
     if (key === null) {
-      return report(steps.join('.'), `'${step}' is no item of ${steps.slice(0, index).join('.')}, but must be a number, a name, or '+' to append`);
+      return report(
+        steps.join('.'),
+        `'${step}' is no item of ${steps.slice(0, index).join('.')}, but must be a number, a name, or '+' to append`,
+      );
     }
     if (typeof parent !== 'object' || parent === null) {
-      return report(steps.join('.'), `${steps.slice(0, index).join('.')} is a single value, so it has no '${step}'`);
+      return report(
+        steps.join('.'),
+        `${steps.slice(0, index).join('.')} is a single value, so it has no '${step}'`,
+      );
     }
     path.push(key);
     const holder = parent as Record<string | number, unknown>;

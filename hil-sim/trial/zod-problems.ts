@@ -14,7 +14,10 @@ type Issue = z.core.$ZodIssue;
 
 /** The value at a path of plain values. */
 function valueAt(root: unknown, path: Path): unknown {
-  return path.reduce<unknown>((value, step) => (value as Record<string | number, unknown> | null | undefined)?.[step], root);
+  return path.reduce<unknown>(
+    (value, step) => (value as Record<string | number, unknown> | null | undefined)?.[step],
+    root,
+  );
 }
 
 /** A value as an error shows it: short, on one line. */
@@ -27,7 +30,12 @@ function shown(value: unknown): string {
 }
 
 const KINDS: Record<string, string> = {
-  object: 'a group of keys', array: 'a list', string: 'text', number: 'a number', int: 'a whole number', boolean: 'true or false',
+  object: 'a group of keys',
+  array: 'a list',
+  string: 'text',
+  number: 'a number',
+  int: 'a whole number',
+  boolean: 'true or false',
 };
 
 /** One schema issue as one or more sentences with their places. */
@@ -37,15 +45,25 @@ export function describeIssue(issue: Issue, root: unknown): Described[] {
   const say = (message: string): Described[] => [{ path, message, atKey: false }];
   switch (issue.code) {
     case 'unrecognized_keys':
-      return issue.keys.map((key) => ({ path: [...path, key], message: unknownKey(key, path, root), atKey: true }));
+      return issue.keys.map((key) => ({
+        path: [...path, key],
+        message: unknownKey(key, path, root),
+        atKey: true,
+      }));
     case 'invalid_type':
       return say(`is ${shown(found)}, but must be ${KINDS[issue.expected] ?? issue.expected}`);
     case 'invalid_value':
-      return say(`is ${shown(found)}, but must be ${oneOf(issue.values)}${meant(String(found), issue.values)}`);
+      return say(
+        `is ${shown(found)}, but must be ${oneOf(issue.values)}${meant(String(found), issue.values)}`,
+      );
     case 'too_small':
-      return say(`is ${shown(found)}, but must ${bound(issue.origin, `${issue.inclusive === false ? 'more than' : 'at least'} ${issue.minimum}`)}`);
+      return say(
+        `is ${shown(found)}, but must ${bound(issue, 'more than', 'at least', issue.minimum)}`,
+      );
     case 'too_big':
-      return say(`is ${shown(found)}, but must ${bound(issue.origin, `${issue.inclusive === false ? 'less than' : 'at most'} ${issue.maximum}`)}`);
+      return say(
+        `is ${shown(found)}, but must ${bound(issue, 'less than', 'at most', issue.maximum)}`,
+      );
     case 'invalid_format':
       return say(`is ${shown(found)}, but must be like ${formOf(path)}`);
     case 'invalid_union':
@@ -55,14 +73,23 @@ export function describeIssue(issue: Issue, root: unknown): Described[] {
   }
 }
 
-function bound(origin: string, text: string): string {
-  if (origin === 'array') return `have ${text} items`;
-  if (origin === 'string') return `have ${text} characters`;
+interface Bound {
+  readonly origin: string;
+  readonly inclusive?: boolean;
+}
+
+/** "be at least 3", "have at most 16 items". */
+function bound(of: Bound, open: string, closed: string, value: number | bigint): string {
+  const text = `${of.inclusive === false ? open : closed} ${value}`;
+  if (of.origin === 'array') return `have ${text} items`;
+  if (of.origin === 'string') return `have ${text} characters`;
   return `be ${text}`;
 }
 
 function formOf(path: Path): string {
-  return path.at(-1) === 'start' ? '2027-05-01T06:00Z' : 'amber-2: lower-case letters, digits and hyphens, 24 at most';
+  return path.at(-1) === 'start'
+    ? '2027-05-01T06:00Z'
+    : 'amber-2: lower-case letters, digits and hyphens, 24 at most';
 }
 
 function describeUnion(issue: Extract<Issue, { code: 'invalid_union' }>, root: unknown): Described[] {
@@ -70,13 +97,26 @@ function describeUnion(issue: Extract<Issue, { code: 'invalid_union' }>, root: u
   const found = valueAt(root, path);
   const last = path.at(-1);
   if ('discriminator' in issue && issue.discriminator !== undefined) {
-    const kinds = path[0] === 'faults'
-      ? ['link', 'compass', 'log', 'fix', 'reboot', 'current']
-      : ['uniform', 'tide', 'eddy', 'shear'];
-    return [{ path, message: `is ${shown(found)}, but must be ${oneOf(kinds)}${meant(String(found), kinds)}`, atKey: false }];
+    const kinds =
+      path[0] === 'faults'
+        ? ['link', 'compass', 'log', 'fix', 'reboot', 'current']
+        : ['uniform', 'tide', 'eddy', 'shear'];
+    return [
+      {
+        path,
+        message: `is ${shown(found)}, but must be ${oneOf(kinds)}${meant(String(found), kinds)}`,
+        atKey: false,
+      },
+    ];
   }
   if (last === 'spacing') {
-    return [{ path, message: `is ${shown(found)}, but must be even or a list of offsets in turns, 0 up to 1`, atKey: false }];
+    return [
+      {
+        path,
+        message: `is ${shown(found)}, but must be even or a list of offsets in turns, 0 up to 1`,
+        atKey: false,
+      },
+    ];
   }
   return [{ path, message: `is ${shown(found)}, which is none of the forms allowed here`, atKey: false }];
 }
@@ -108,9 +148,13 @@ function distance(a: string, b: string): number {
 
 /** "; did you mean …?" if one allowed word is near. */
 function meant(word: string, allowed: readonly unknown[]): string {
-  const near = allowed.map(String).map((candidate) => ({ candidate, edits: distance(word.slice(0, 40), candidate) }))
+  const near = allowed
+    .map(String)
+    .map((candidate) => ({ candidate, edits: distance(word.slice(0, 40), candidate) }))
     .sort((a, b) => a.edits - b.edits)[0];
-  return near !== undefined && near.edits <= Math.max(1, Math.floor(word.length / 3)) ? `; did you mean ${near.candidate}?` : '';
+  return near !== undefined && near.edits <= Math.max(1, Math.floor(word.length / 3))
+    ? `; did you mean ${near.candidate}?`
+    : '';
 }
 
 interface SchemaDef {
@@ -137,7 +181,8 @@ function keysAt(path: Path, root: unknown): string[] {
     if (def.type === 'union') {
       const kind = (valueAt(root, path.slice(0, index + 1)) as { kind?: unknown } | null)?.kind;
       const option = def.options?.find((candidate) => {
-        const values = (candidate._zod.def.shape?.['kind']?._zod.def as unknown as { values?: unknown[] })?.values;
+        const values = (candidate._zod.def.shape?.['kind']?._zod.def as unknown as { values?: unknown[] })
+          ?.values;
         return values?.includes(kind) ?? false;
       });
       if (option === undefined) return [];

@@ -28,7 +28,11 @@ export interface Basis {
   readonly trig: Float64Array;
 }
 
-export function startBasis(box: { centreEastM: number; centreNorthM: number; halfM: number }, lengthM: number, count: number): Basis {
+export function startBasis(
+  box: { centreEastM: number; centreNorthM: number; halfM: number },
+  lengthM: number,
+  count: number,
+): Basis {
   const perM = Math.PI / (2 * box.halfM);
   const modes: { m: number; n: number; spread: number }[] = [];
   for (let m = 1; m <= ORDER_MAX; m++) {
@@ -37,7 +41,8 @@ export function startBasis(box: { centreEastM: number; centreNorthM: number; hal
       modes.push({ m, n, spread: Math.exp(-0.25 * lengthM * lengthM * k2) });
     }
   }
-  const weight = (mode: { m: number; n: number; spread: number }): number => mode.spread ** 2 * (mode.m ** 2 + mode.n ** 2);
+  const weight = (mode: { m: number; n: number; spread: number }): number =>
+    mode.spread ** 2 * (mode.m ** 2 + mode.n ** 2);
   modes.sort((a, b) => weight(b) - weight(a) || a.m + a.n - (b.m + b.n) || a.m - b.m);
   const kept = modes.slice(0, count);
   const basis: Basis = {
@@ -57,7 +62,10 @@ export function startBasis(box: { centreEastM: number; centreNorthM: number; hal
 }
 
 /** Scales all modes so that a current component has unit variance on average over the inner half. */
-function normaliseScales(basis: Basis, box: { centreEastM: number; centreNorthM: number; halfM: number }): void {
+function normaliseScales(
+  basis: Basis,
+  box: { centreEastM: number; centreNorthM: number; halfM: number },
+): void {
   const east = new Float64Array(basis.count);
   const north = new Float64Array(basis.count);
   const steps = 16;
@@ -79,7 +87,12 @@ function normaliseScales(basis: Basis, box: { centreEastM: number; centreNorthM:
 }
 
 /** The current of each mode at a place, per unit of its amplitude. */
-export function modesAt(basis: Basis, eastM: number, northM: number, out: { east: Float64Array; north: Float64Array }): void {
+export function modesAt(
+  basis: Basis,
+  eastM: number,
+  northM: number,
+  out: { east: Float64Array; north: Float64Array },
+): void {
   const x = (eastM - basis.westM) / basis.sideM;
   const y = (northM - basis.southM) / basis.sideM;
   if (!(x >= 0 && x <= 1 && y >= 0 && y <= 1)) {

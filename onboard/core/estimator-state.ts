@@ -20,7 +20,12 @@ export interface EstimatorTick {
   readonly atS: number;
   readonly headingRad: number;
   readonly speedMps: number;
-  readonly fix: { readonly atS: number; readonly eastM: number; readonly northM: number; readonly sigmaM: number } | null;
+  readonly fix: {
+    readonly atS: number;
+    readonly eastM: number;
+    readonly northM: number;
+    readonly sigmaM: number;
+  } | null;
   /** The true current, in the yardstick run in which it is given; else null. */
   readonly given: { readonly eastMps: number; readonly northMps: number } | null;
   /** Whether own notes stay unrounded, as in the yardstick run in which all notes are shared at once. */
@@ -59,7 +64,9 @@ export interface Estimator {
 function planOf(mission: Mission): FilterPlan {
   const { onboard, loop, self } = mission;
   const box = {
-    centreEastM: loop.centre.east_m, centreNorthM: loop.centre.north_m, halfM: BOX_RADII * loop.radius_m,
+    centreEastM: loop.centre.east_m,
+    centreNorthM: loop.centre.north_m,
+    halfM: BOX_RADII * loop.radius_m,
   };
   return layOut({
     basis: startBasis(box, onboard.mapLength_m, onboard.mapModes),
@@ -92,13 +99,25 @@ export function startEstimator(mission: Mission): Estimator {
     rows: { east: new Float64Array(plan.size), north: new Float64Array(plan.size) },
     track: startTrack(),
     position: {
-      eastM: start.east_m, northM: start.north_m, varEastM2: sigmaM ** 2, covEastNorthM2: 0, varNorthM2: sigmaM ** 2,
+      eastM: start.east_m,
+      northM: start.north_m,
+      varEastM2: sigmaM ** 2,
+      covEastNorthM2: 0,
+      varNorthM2: sigmaM ** 2,
     },
     memory: {
-      hasTicked: false, lastAtS: 0, lastEastMps: 0, lastNorthMps: 0, sinceSpread: SPREAD_TICKS, refused: 0,
-      hasIssued: false, ownNumberHeard: 0, isLost: false,
-      whitePerS: mission.self.logSigma_mps ** 2
-        + (mission.self.cruise_mps * radFromDeg(mission.self.compassSigma_deg)) ** 2,
+      hasTicked: false,
+      lastAtS: 0,
+      lastEastMps: 0,
+      lastNorthMps: 0,
+      sinceSpread: SPREAD_TICKS,
+      refused: 0,
+      hasIssued: false,
+      ownNumberHeard: 0,
+      isLost: false,
+      whitePerS:
+        mission.self.logSigma_mps ** 2 +
+        (mission.self.cruise_mps * radFromDeg(mission.self.compassSigma_deg)) ** 2,
     },
   };
 }

@@ -9,7 +9,14 @@ import type { Note } from '../../messages/frame.ts';
 import { SPREAD_TICKS, type Estimator, type EstimatorTick } from './estimator-state.ts';
 import { passesGate, takeFix } from './fixes.ts';
 import { currentWithSpread, meanCurrentAt, takeIntoMap, workMap, type CurrentAnswer } from './map.ts';
-import { addWay, meanPosition, positionSpread, resetLeg, writePositionRows, type PositionAnswer } from './reckon.ts';
+import {
+  addWay,
+  meanPosition,
+  positionSpread,
+  resetLeg,
+  writePositionRows,
+  type PositionAnswer,
+} from './reckon.ts';
 import { addTrack } from './track.ts';
 
 export { startEstimator, type Estimator, type EstimatorTick } from './estimator-state.ts';
@@ -43,12 +50,20 @@ export function workEstimator(estimator: Estimator): void {
 }
 
 /** Mean and covariance of the current at any place and time. */
-export function currentAt(estimator: Estimator, at: { eastM: number; northM: number; atS: number }, out: CurrentAnswer): void {
+export function currentAt(
+  estimator: Estimator,
+  at: { eastM: number; northM: number; atS: number },
+  out: CurrentAnswer,
+): void {
   currentWithSpread(estimator.map, at, out);
 }
 
 /** The mean current only, written to `out` as east, north. */
-export function currentMeanAt(estimator: Estimator, at: { eastM: number; northM: number; atS: number }, out: Float64Array): void {
+export function currentMeanAt(
+  estimator: Estimator,
+  at: { eastM: number; northM: number; atS: number },
+  out: Float64Array,
+): void {
   meanCurrentAt(estimator.map, at, out);
 }
 
@@ -110,7 +125,8 @@ function moveOn(estimator: Estimator, tick: EstimatorTick): void {
   const { memory, leg, map, track, position } = estimator;
   const eastMps = tick.speedMps * Math.sin(tick.headingRad);
   const northMps = tick.speedMps * Math.cos(tick.headingRad);
-  if (memory.hasTicked && tick.atS - memory.lastAtS > GAP_TICKS * estimator.mission.tick_s) bridgeGap(estimator, tick.atS);
+  if (memory.hasTicked && tick.atS - memory.lastAtS > GAP_TICKS * estimator.mission.tick_s)
+    bridgeGap(estimator, tick.atS);
   if (memory.hasTicked) {
     const seconds = tick.atS - memory.lastAtS;
     const way = {
@@ -140,7 +156,10 @@ function bridgeGap(estimator: Estimator, atS: number): void {
   const wayM = (atS - memory.lastAtS) * mission.self.speedMax_mps;
   anchor.eastM = position.eastM;
   anchor.northM = position.northM;
-  anchor.sigmaM = Math.min(mission.keepIn.radius_m, Math.sqrt(position.varEastM2 + position.varNorthM2 + wayM * wayM));
+  anchor.sigmaM = Math.min(
+    mission.keepIn.radius_m,
+    Math.sqrt(position.varEastM2 + position.varNorthM2 + wayM * wayM),
+  );
   anchor.noteNumber = 0;
   anchor.isFix = false;
   resetLeg(leg, atS);

@@ -61,7 +61,10 @@ export const TIDE_AT = 2;
 export const CURRENT_STATES = 6;
 const NEVER = -1e9;
 
-export type PlanNumbers = Omit<FilterPlan, 'valueAt' | 'rateAt' | 'biasAt' | 'fixAt' | 'newFixAt' | 'size' | 'given' | 'scratch'>;
+export type PlanNumbers = Omit<
+  FilterPlan,
+  'valueAt' | 'rateAt' | 'biasAt' | 'fixAt' | 'newFixAt' | 'size' | 'given' | 'scratch'
+>;
 
 /** Lays out the state. */
 export function layOut(numbers: PlanNumbers): FilterPlan {
@@ -74,7 +77,13 @@ export function layOut(numbers: PlanNumbers): FilterPlan {
   const newFixAt = fixAt + 2 * fleetSize;
   const size = newFixAt + 2;
   return {
-    ...numbers, valueAt, rateAt, biasAt, fixAt, newFixAt, size,
+    ...numbers,
+    valueAt,
+    rateAt,
+    biasAt,
+    fixAt,
+    newFixAt,
+    size,
     given: { east: 0, north: 0 },
     scratch: {
       modes: { east: new Float64Array(count), north: new Float64Array(count) },
@@ -235,7 +244,10 @@ export function renewState(filter: Filter, size: number, at: number, sigma: numb
 
 /** One scalar measurement: value = row·x + noise. The covariance stays symmetric to the last bit. */
 export function update(
-  plan: FilterPlan, filter: Filter, row: Float64Array, measured: { value: number; variance: number },
+  plan: FilterPlan,
+  filter: Filter,
+  row: Float64Array,
+  measured: { value: number; variance: number },
 ): void {
   const { size } = plan;
   const { gain } = plan.scratch;

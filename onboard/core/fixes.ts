@@ -28,7 +28,8 @@ export function passesGate(estimator: Estimator, fix: EstimatorFix): boolean {
   const varNorth = position.varNorthM2 + fix.sigmaM ** 2;
   const cross = position.covEastNorthM2;
   const determinant = varEast * varNorth - cross * cross;
-  const distance2 = (varNorth * east * east - 2 * cross * east * north + varEast * north * north) / determinant;
+  const distance2 =
+    (varNorth * east * east - 2 * cross * east * north + varEast * north * north) / determinant;
   if (distance2 <= estimator.mission.onboard.fixGate ** 2) {
     memory.refused = 0;
     return true;
@@ -65,7 +66,15 @@ export function takeFix(estimator: Estimator, fix: EstimatorFix, unrounded: bool
 }
 
 function issueNote(
-  estimator: Estimator, fix: EstimatorFix, tail: { waterEastM: number; waterNorthM: number; carriedEastM: number; carriedNorthM: number; unrounded: boolean },
+  estimator: Estimator,
+  fix: EstimatorFix,
+  tail: {
+    waterEastM: number;
+    waterNorthM: number;
+    carriedEastM: number;
+    carriedNorthM: number;
+    unrounded: boolean;
+  },
 ): Note | null {
   const { anchor, leg, log, memory, selfIndex, track, map } = estimator;
   const last = Math.max(newestNumber(log, selfIndex), memory.ownNumberHeard);

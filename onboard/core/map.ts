@@ -9,7 +9,13 @@
 import type { Note } from '../../messages/frame.ts';
 import { modesAt } from './basis.ts';
 import {
-  TIDE_AT, copyFilter, resetFilter, startFilter, transition, type Filter, type FilterPlan,
+  TIDE_AT,
+  copyFilter,
+  resetFilter,
+  startFilter,
+  transition,
+  type Filter,
+  type FilterPlan,
 } from './filter.ts';
 import { addNote, type NoteLog } from './note-log.ts';
 import { takeIn } from './take-note.ts';
@@ -29,7 +35,11 @@ export interface CurrentMap {
   /** Earlier states of the canonical line, oldest first; the first `counts.checkpoints` are filled. */
   readonly checkpoints: Filter[];
   readonly counts: { checkpoints: number; isBehind: boolean };
-  readonly scratch: { readonly east: Float64Array; readonly north: Float64Array; readonly gain: Float64Array };
+  readonly scratch: {
+    readonly east: Float64Array;
+    readonly north: Float64Array;
+    readonly gain: Float64Array;
+  };
 }
 
 export function startMap(plan: FilterPlan, log: NoteLog): CurrentMap {
@@ -41,7 +51,9 @@ export function startMap(plan: FilterPlan, log: NoteLog): CurrentMap {
     checkpoints: Array.from({ length: CHECKPOINTS_MAX }, () => startFilter(plan)),
     counts: { checkpoints: 0, isBehind: false },
     scratch: {
-      east: new Float64Array(plan.size), north: new Float64Array(plan.size), gain: new Float64Array(plan.size),
+      east: new Float64Array(plan.size),
+      north: new Float64Array(plan.size),
+      gain: new Float64Array(plan.size),
     },
   };
 }
@@ -65,7 +77,8 @@ export function takeIntoMap(map: CurrentMap, note: Note): boolean {
 /** Sends the working filter back so that it will meet the note at `place`. */
 function rewind(map: CurrentMap, place: number): void {
   const { counts, working, checkpoints } = map;
-  while (counts.checkpoints > 0 && checkpoints[counts.checkpoints - 1]!.clock.cursor > place) counts.checkpoints -= 1;
+  while (counts.checkpoints > 0 && checkpoints[counts.checkpoints - 1]!.clock.cursor > place)
+    counts.checkpoints -= 1;
   if (counts.isBehind && working.clock.cursor <= place) return;
   counts.isBehind = true;
   if (counts.checkpoints > 0) copyFilter(checkpoints[counts.checkpoints - 1]!, working);
@@ -102,7 +115,8 @@ function dropOne(map: CurrentMap, nowS: number): void {
   let drop = 0;
   let least = Infinity;
   for (let index = 0; index < counts.checkpoints - 1; index++) {
-    const beforeS = index === 0 ? checkpoints[0]!.clock.atS - CHECKPOINT_EVERY_S : checkpoints[index - 1]!.clock.atS;
+    const beforeS =
+      index === 0 ? checkpoints[0]!.clock.atS - CHECKPOINT_EVERY_S : checkpoints[index - 1]!.clock.atS;
     const afterS = checkpoints[index + 1]!.clock.atS;
     const widened = (afterS - beforeS) / (nowS - beforeS);
     if (widened < least) {
@@ -111,7 +125,8 @@ function dropOne(map: CurrentMap, nowS: number): void {
     }
   }
   const freed = checkpoints[drop]!;
-  for (let index = drop; index < counts.checkpoints - 1; index++) checkpoints[index] = checkpoints[index + 1]!;
+  for (let index = drop; index < counts.checkpoints - 1; index++)
+    checkpoints[index] = checkpoints[index + 1]!;
   checkpoints[counts.checkpoints - 1] = freed;
   counts.checkpoints -= 1;
 }
@@ -126,7 +141,11 @@ export interface CurrentAnswer {
 }
 
 /** The mean current at any place and time, written to `out` as east, north. */
-export function meanCurrentAt(map: CurrentMap, at: { eastM: number; northM: number; atS: number }, out: Float64Array): void {
+export function meanCurrentAt(
+  map: CurrentMap,
+  at: { eastM: number; northM: number; atS: number },
+  out: Float64Array,
+): void {
   const { plan, active } = map;
   const { mean } = active;
   const { modes } = plan.scratch;
@@ -151,7 +170,11 @@ export function filterTimeS(filter: Filter, elseS: number): number {
 }
 
 /** Mean and covariance of the current at any place and time. */
-export function currentWithSpread(map: CurrentMap, at: { eastM: number; northM: number; atS: number }, out: CurrentAnswer): void {
+export function currentWithSpread(
+  map: CurrentMap,
+  at: { eastM: number; northM: number; atS: number },
+  out: CurrentAnswer,
+): void {
   const { plan, active, scratch } = map;
   const { modes } = plan.scratch;
   const { count } = plan.basis;
@@ -192,7 +215,10 @@ export function currentWithSpread(map: CurrentMap, at: { eastM: number; northM: 
 
 /** P row over the first `extent` states, written to `out`. */
 export function timesCovariance(
-  filter: Filter, size: number, of: { row: Float64Array; extent: number }, out: Float64Array,
+  filter: Filter,
+  size: number,
+  of: { row: Float64Array; extent: number },
+  out: Float64Array,
 ): void {
   const { row, extent } = of;
   const { covariance } = filter;

@@ -12,7 +12,16 @@ import type { Aid, AidedSense } from '../../messages/aid.ts';
 import type { Sense } from '../../messages/sense.ts';
 import type { Estimate, HeardFate, MapMessage, Steer } from '../../messages/steer.ts';
 import {
-  biasNow, currentAt, currentMeanAt, guessPosition, hearOwnNumber, isLost, reckonTick, startLost, takeNote, workEstimator,
+  biasNow,
+  currentAt,
+  currentMeanAt,
+  guessPosition,
+  hearOwnNumber,
+  isLost,
+  reckonTick,
+  startLost,
+  takeNote,
+  workEstimator,
 } from './estimator.ts';
 import { guide, hearPeer, isBatteryLow } from './guidance.ts';
 import { noteCount } from './note-log.ts';
@@ -107,7 +116,11 @@ function renewPicture(state: State, sense: Sense, minute: boolean): void {
   currentMeanAt(estimator, here, meanHere);
   if (sense.tick % SIGMA_POINT_TICKS === 0) {
     const point = (sense.tick / SIGMA_POINT_TICKS) % MAP_POINTS;
-    currentAt(estimator, { eastM: table.pointEastM[point]!, northM: table.pointNorthM[point]!, atS: sense.at_s }, there);
+    currentAt(
+      estimator,
+      { eastM: table.pointEastM[point]!, northM: table.pointNorthM[point]!, atS: sense.at_s },
+      there,
+    );
     table.sigmaMps[point] = Math.sqrt(there.varEastM2ps2 + there.varNorthM2ps2);
   }
   if (sense.tick % SIGMA_HERE_TICKS === 0) {
@@ -160,20 +173,22 @@ function say(state: State, atS: number): string {
   const { position } = estimator;
   const sequence = nextSequence(talk);
   const alone = mission.sharing === 'solo';
-  return hexFromBytes(encodeFrame({
-    senderIndex: state.selfIndex,
-    sequence,
-    timeMod4096S: frameTime(atS),
-    eastM: position.eastM,
-    northM: position.northM,
-    phase: guidanceOut.phase,
-    stateIndex: AGENT_STATES.indexOf(guidanceOut.state),
-    positionUncertain: guidanceIn.positionSigmaM > mission.onboard.positionUncertain_m,
-    mapStale: guidanceIn.mapStale,
-    batteryLow: isBatteryLow(state.guidance),
-    note: alone ? null : chooseNote(sharing, estimator.log),
-    haves: alone ? [0, 0, 0, 0, 0] : ownHaves(sharing, estimator.log, sequence),
-  }));
+  return hexFromBytes(
+    encodeFrame({
+      senderIndex: state.selfIndex,
+      sequence,
+      timeMod4096S: frameTime(atS),
+      eastM: position.eastM,
+      northM: position.northM,
+      phase: guidanceOut.phase,
+      stateIndex: AGENT_STATES.indexOf(guidanceOut.state),
+      positionUncertain: guidanceIn.positionSigmaM > mission.onboard.positionUncertain_m,
+      mapStale: guidanceIn.mapStale,
+      batteryLow: isBatteryLow(state.guidance),
+      note: alone ? null : chooseNote(sharing, estimator.log),
+      haves: alone ? [0, 0, 0, 0, 0] : ownHaves(sharing, estimator.log, sequence),
+    }),
+  );
 }
 
 function estimateOf(state: State): Estimate {

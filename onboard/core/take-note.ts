@@ -14,8 +14,12 @@ import { modesAt } from './basis.ts';
 import { TIDE_AT, moveState, predict, renewState, update, type Filter, type FilterPlan } from './filter.ts';
 
 /** Points along a note's path, with Gauss-Legendre weights: five are exact to the ninth power. */
-const PATH_POINTS = [0.04691007703066802, 0.23076534494715845, 0.5, 0.7692346550528415, 0.9530899229693319] as const;
-const PATH_WEIGHTS = [0.11846344252809454, 0.23931433524968324, 0.28444444444444444, 0.23931433524968324, 0.11846344252809454] as const;
+const PATH_POINTS = [
+  0.04691007703066802, 0.23076534494715845, 0.5, 0.7692346550528415, 0.9530899229693319,
+] as const;
+const PATH_WEIGHTS = [
+  0.11846344252809454, 0.23931433524968324, 0.28444444444444444, 0.23931433524968324, 0.11846344252809454,
+] as const;
 
 /** Writes the rows of the mean current over a note's path, for the state at the note's end. */
 function writePathRows(plan: FilterPlan, note: Note): void {

@@ -19,13 +19,26 @@ export interface Track {
 }
 
 export function startTrack(): Track {
-  return { ways: new Float64Array(WAYS * FIELDS), places: new Float64Array(PLACES * 3), counts: { ways: 0, places: 0 } };
+  return {
+    ways: new Float64Array(WAYS * FIELDS),
+    places: new Float64Array(PLACES * 3),
+    counts: { ways: 0, places: 0 },
+  };
 }
 
 export function addTrack(track: Track, way: Way): void {
   const { ways, places, counts } = track;
   ways.set(
-    [way.midS, way.seconds, way.waterEastM, way.waterNorthM, way.eastM, way.northM, way.carriedEastM, way.carriedNorthM],
+    [
+      way.midS,
+      way.seconds,
+      way.waterEastM,
+      way.waterNorthM,
+      way.eastM,
+      way.northM,
+      way.carriedEastM,
+      way.carriedNorthM,
+    ],
     (counts.ways % WAYS) * FIELDS,
   );
   counts.ways += 1;
@@ -45,8 +58,14 @@ export function wayBack(track: Track, back: number): Way {
   const at = ((track.counts.ways - back) % WAYS) * FIELDS;
   const { ways } = track;
   return {
-    midS: ways[at]!, seconds: ways[at + 1]!, waterEastM: ways[at + 2]!, waterNorthM: ways[at + 3]!,
-    eastM: ways[at + 4]!, northM: ways[at + 5]!, carriedEastM: ways[at + 6]!, carriedNorthM: ways[at + 7]!,
+    midS: ways[at]!,
+    seconds: ways[at + 1]!,
+    waterEastM: ways[at + 2]!,
+    waterNorthM: ways[at + 3]!,
+    eastM: ways[at + 4]!,
+    northM: ways[at + 5]!,
+    carriedEastM: ways[at + 6]!,
+    carriedNorthM: ways[at + 7]!,
   };
 }
 
