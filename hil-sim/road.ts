@@ -72,7 +72,8 @@ async function withProcesses(
   ]);
   let bus: Bus | null = null;
   try {
-    bus = broker === undefined ? await startBroker() : await joinBroker({ url: broker, bench });
+    const vehicles = missions.map(({ vehicle }) => vehicle);
+    bus = broker === undefined ? await startBroker() : await joinBroker({ url: broker, bench, vehicles });
     for (const vehicle of leave) complain([`waiting for an agent of ${vehicle} at ${bus.url}, bench ${bench}`]);
     const agents = await processAgents({
       bus, bench, missions, signal, leave, restart, keepsMemory: keepsMemory(job.trial),

@@ -36,7 +36,8 @@ describe('the digest of a run', () => {
     const port = await new Promise<string>((resolve) => {
       outside.stdout.setEncoding('utf8').once('data', (text: string) => { resolve(text.trim()); });
     });
-    const bus = await joinBroker({ url: `mqtt://127.0.0.1:${port}`, bench: BENCH, qos: 1 });
+    const vehicles = trial.fleet.vehicles.map(({ name }) => name);
+    const bus = await joinBroker({ url: `mqtt://127.0.0.1:${port}`, bench: BENCH, vehicles, qos: 1 });
     const { result } = await runOverProcesses({ trial, ticks: TICKS, bus, qos: 1 });
     expect(result).toMatchObject({ ok: true, digest: await digestInProcess(trial) });
     outside.stdin.end();

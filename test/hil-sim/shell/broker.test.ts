@@ -74,7 +74,7 @@ describe('the embedded broker', () => {
 describe('an outside broker', () => {
   it('is joined, carries messages both ways, and is left', async () => {
     const outside = await outsideBroker();
-    const bus = await joinBroker({ url: outside.url, bench: 'b' });
+    const bus = await joinBroker({ url: outside.url, bench: 'b', vehicles: ['amber', 'cobalt'] });
     const heard: string[] = [];
     await bus.subscribe('drywake/b/+/steer', (topic) => { heard.push(topic); });
     await bus.subscribe('drywake/b/+/status', () => { heard.push('status'); });
@@ -96,7 +96,7 @@ describe('an outside broker', () => {
     await client.subscribeAsync('drywake/b/sea/+');
     const script = `import { joinBroker } from ${JSON.stringify(
       new URL('../../../dist/hil-sim/shell/external-broker.js', import.meta.url).href)};`
-      + `await joinBroker({ url: ${JSON.stringify(outside.url)}, bench: 'b' }); process.kill(process.pid, 'SIGKILL');`;
+      + `await joinBroker({ url: ${JSON.stringify(outside.url)}, bench: 'b', vehicles: [] }); process.kill(process.pid, 'SIGKILL');`;
     spawn(process.execPath, ['--input-type=module', '-e', script], { stdio: ['ignore', 'ignore', 'inherit'] });
     await waitUntil(() => heard.length > 0, 5000);
     expect(heard).toEqual(['drywake/b/sea/tick {"tick":0,"time_s":0,"phase":"failed"}']);
@@ -107,7 +107,7 @@ describe('an outside broker', () => {
   it('that is not there is named in the failure', async () => {
     const bus = await startBroker();
     await bus.close();
-    const failure = await joinBroker({ url: bus.url, bench: 'b', withinMs: 700 }).catch((error: unknown) => error);
+    const failure = await joinBroker({ url: bus.url, bench: 'b', vehicles: [], withinMs: 700 }).catch((error: unknown) => error);
     expect(failure).toBeInstanceOf(BrokerTrouble);
     expect(String(failure)).toContain(bus.url);
   });
