@@ -62,7 +62,7 @@ export function finishMeasures(m: Measures): MeasureReport {
       separationMin: orNull(m.breachS[1]!),
     },
     vehicles: m.names.map((_name, index) => vehicleMeasures(m, index, formUp !== null)),
-    excepted: m.names.filter((_name, index) => m.isCounted[index] === 0),
+    excepted: m.names.filter((name) => m.except.includes(name)),
     ticks: m.progress[0]!,
     lastS: m.progress[1]!,
     series: m.series,

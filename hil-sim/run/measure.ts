@@ -2,7 +2,7 @@
  * The measures of a run, from truth and steers alone, tick by tick, by mathematics that no agent shares.
  *
  * A vehicle named in `limits.except` does not count for forming up, the loop, gaps, currents, maps and
- * positions; the others' target gaps are those of the fleet without it. It always counts for
+ * positions; its place stays in the pattern, and a gap that spans it has both targets. It always counts for
  * separation, frames and energy. From `formUp_s` on every counted vehicle counts at every tick,
  * whatever state it claims, until the script ends its part (`parts.ts`). Separation is in
  * space (depth included). Every array is sized at start.
@@ -85,7 +85,7 @@ export function startMeasures(trial: Trial, water: Water): Measures {
     track,
     part: {
       counted: Int32Array.from(counted),
-      gaps: startGaps(trial.mission.spacing, counted, { fleetSize, lengthM: track.lengthM }),
+      gaps: startGaps(spacingOf(trial), counted, { fleetSize, lengthM: track.lengthM }),
       changesS: nextChangeS(spans, -1),
     },
     outSpans: spans,
@@ -117,6 +117,14 @@ export function startMeasures(trial: Trial, water: Water): Measures {
     lateTicks: column(),
     progress: Float64Array.of(0, 0),
   };
+}
+
+/** Even spacing with a vehicle excepted is the whole fleet's pattern, in which its place stays open. */
+function spacingOf(trial: Trial): Trial['mission']['spacing'] {
+  const { spacing } = trial.mission;
+  const count = trial.fleet.vehicles.length;
+  if (spacing !== 'even' || (trial.limits.except ?? []).length === 0) return spacing;
+  return Array.from({ length: count }, (_, index) => index / count);
 }
 
 /** Takes one tick; ticks come in order. */
@@ -154,7 +162,7 @@ function renewPart(m: Measures, timeS: number): void {
   isCounted.fill(0);
   for (const index of counted) isCounted[index] = 1;
   part.counted = Int32Array.from(counted);
-  part.gaps = startGaps(trial.mission.spacing, counted, {
+  part.gaps = startGaps(spacingOf(trial), counted, {
     fleetSize: names.length,
     lengthM: m.track.lengthM,
   });

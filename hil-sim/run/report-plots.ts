@@ -2,7 +2,7 @@
 import * as Plot from '@observablehq/plot';
 import { drawing } from './report-html.ts';
 import { markOf } from './report-marks.ts';
-import type { ReportInput } from './report.ts';
+import type { ReportInput } from './report-input.ts';
 
 const WIDTH = 520;
 const HEIGHT = 230;

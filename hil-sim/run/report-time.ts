@@ -4,7 +4,7 @@ import { MEASURES, type MeasureName, type VehicleMeasures } from './measures.ts'
 import { figureOf, html } from './report-html.ts';
 import { markPicture } from './report-marks.ts';
 import { deliveryPlot, linesPlot, type Lines } from './report-plots.ts';
-import type { ReportInput } from './report.ts';
+import type { ReportInput } from './report-input.ts';
 
 export function timeSection(input: ReportInput): string {
   const { report, trial } = input;

@@ -5,7 +5,7 @@ import { pictureOf, type MapPoint } from './maps.ts';
 import type { MeasureReport } from './measure-report.ts';
 import { drawing, figureOf, html, plainTick } from './report-html.ts';
 import { markOf, markPicture } from './report-marks.ts';
-import type { ReportInput } from './report.ts';
+import type { ReportInput } from './report-input.ts';
 
 const INK = 'var(--ink)';
 const LOOP = { stroke: 'var(--ink)', strokeWidth: 5, strokeOpacity: 0.16 } as const;

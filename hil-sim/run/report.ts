@@ -2,23 +2,16 @@
  * `report.html`: the page a person reads first. One file, nothing fetched, no script; the verdict and
  * why, the limits, the water, time, the vehicles, and how to run it again.
  */
-import type { Trial } from '../trial/schema.ts';
 import { figure, span } from './figures.ts';
-import type { MeasureReport } from './measure-report.ts';
 import { MEASURES, MEASURE_NAMES, type VehicleMeasures } from './measures.ts';
-import { exceptSentence, verdictSentence, worstWords, type Outcome } from './outcome.ts';
+import { exceptSentence, verdictSentence, worstWords } from './outcome.ts';
 import { html, whole } from './report-html.ts';
+import type { ReportInput } from './report-input.ts';
 import { limitsSection } from './report-limits.ts';
 import { markPicture } from './report-marks.ts';
 import { REPORT_STYLE } from './report-style.ts';
 import { timeSection } from './report-time.ts';
 import { waterSection } from './report-water.ts';
-
-export interface ReportInput {
-  readonly trial: Trial;
-  readonly outcome: Outcome;
-  readonly report: MeasureReport;
-}
 
 /** The whole page; the same input gives the same page. */
 export function renderReport(input: ReportInput): string {

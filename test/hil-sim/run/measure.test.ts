@@ -258,10 +258,10 @@ describe('gaps', () => {
 
   it('leave out a vehicle that the limits except, which still counts for separation', () => {
     const trial = trialOf(3, { limits: { except: ['jade'] } });
-    // Amber and cobalt stand half a loop apart; jade lies 7 m from amber, far from any place of its own.
+    // Amber and cobalt stand a third apart, as in the pattern of three; jade lies 7 m from amber, and its place is open.
     const { values, excepted, vehicles } = run(trial, 900, () => [
       onRing(600, 0),
-      onRing(600, 0.5),
+      onRing(600, 1 / 3),
       onRing(607, 0),
     ]);
     expect(excepted).toEqual(['jade']);

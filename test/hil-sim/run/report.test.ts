@@ -6,7 +6,8 @@ import { startMeasures, takeTick } from '../../../hil-sim/run/measure.ts';
 import { MEASURE_NAMES } from '../../../hil-sim/run/measures.ts';
 import { buildOutcome, verdictSentence, type Outcome } from '../../../hil-sim/run/outcome.ts';
 import { markOf } from '../../../hil-sim/run/report-marks.ts';
-import { renderReport, type ReportInput } from '../../../hil-sim/run/report.ts';
+import type { ReportInput } from '../../../hil-sim/run/report-input.ts';
+import { renderReport } from '../../../hil-sim/run/report.ts';
 import { NAMES, trialOf } from '../../support/synthetic-run.ts';
 import { fleetRecord, tidalWater } from '../../support/synthetic-fleet.ts';
 
