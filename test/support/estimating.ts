@@ -22,12 +22,15 @@ export function planFor(change: Partial<PlanNumbers> = {}, modes = 12): FilterPl
   });
 }
 
-/** Seeded uniform numbers in [0, 1): a linear congruential generator is enough for test data. */
+/** Seeded uniform numbers in (0, 1): a counter, mixed well enough that neighbouring seeds are unrelated. */
 export function randomFrom(seed: number): () => number {
-  let state = (seed * 2_654_435_761 + 12_345) >>> 0;
+  let counter = Math.imul(seed, 0x9e3779b9) >>> 0;
   return () => {
-    state = (Math.imul(state, 1_664_525) + 1_013_904_223) >>> 0;
-    return (state + 0.5) / 4_294_967_296;
+    counter = (counter + 0x6d2b79f5) >>> 0;
+    let mixed = Math.imul(counter ^ (counter >>> 16), 0x85ebca6b);
+    mixed = Math.imul(mixed ^ (mixed >>> 13), 0xc2b2ae35);
+    mixed = Math.imul((mixed ^ (mixed >>> 16)) + seed, 0x27d4eb2f);
+    return (((mixed ^ (mixed >>> 15)) >>> 0) + 0.5) / 4_294_967_296;
   };
 }
 
