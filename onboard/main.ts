@@ -55,12 +55,13 @@ const options = readArguments();
 const say = (line: string): void => { process.stderr.write(`${line}\n`); };
 const stop = new AbortController();
 if (options.tied) {
-  process.stdin.resume().once('end', () => { stop.abort(); }).once('error', () => { stop.abort(); });
+  const onGone = (): void => { stop.abort('the bench has gone'); };
+  process.stdin.resume().once('end', onGone).once('error', onGone);
   process.on('SIGINT', () => undefined);
 } else {
-  process.once('SIGINT', () => { stop.abort(); });
+  process.once('SIGINT', () => { stop.abort('stopped by a signal'); });
 }
-process.once('SIGTERM', () => { stop.abort(); });
+process.once('SIGTERM', () => { stop.abort('stopped by a signal'); });
 process.on('uncaughtException', (error) => {
   say(`agent ${options.vehicle} failed: ${error.stack ?? error.message}`);
   process.exit(EXIT.failed);

@@ -43,21 +43,27 @@ interface Shell {
   readonly ended: Subject<ShellEnd>;
 }
 
-/** Runs one agent until the sea ends the run, the broker is lost or refuses it, or `stop` fires. */
+/** Runs one agent until the sea ends the run, the broker is lost or refuses it, or `stop` fires with a reason. */
 export function runShell(options: ShellOptions, stop: AbortSignal): Promise<ShellEnd> {
   const shell = connectShell(options);
   const { client, ended, answering } = shell;
   const over = new Promise<ShellEnd>((resolve) => {
     ended.subscribe((end) => {
       sayStatus(shell, end.ok ? statusOf(answering, 'ended') : statusOf(answering, 'failed', end.reason));
-      const leave = (): void => { client.end(true, () => { resolve(end); }); };
+      const done = (): void => {
+        clearTimeout(timer);
+        resolve(end);
+      };
+      const leave = (): void => { client.end(true, done); };
       const timer = setTimeout(leave, FAREWELL_MS);
-      if (client.connected) client.end(false, () => { clearTimeout(timer); resolve(end); });
+      if (!client.connected) return leave();
+      client.once('close', leave); // nothing more can leave
+      client.end(false, done);
     });
   });
   joinPipeline(shell);
   keepConnected(shell);
-  const onStop = (): void => { ended.next({ ok: false, reason: 'stopped by a signal' }); };
+  const onStop = (): void => { ended.next({ ok: false, reason: String(stop.reason) }); };
   if (stop.aborted) onStop();
   else stop.addEventListener('abort', onStop, { once: true });
   return over;
@@ -124,6 +130,7 @@ function sayStatus({ client, topics }: Shell, status: Status): void {
 function keepConnected({ client, topics, answering, changed, ended, options }: Shell): void {
   let lost: NodeJS.Timeout | undefined;
   let told = false;
+  let isOver = false;
   client.on('connect', () => {
     clearTimeout(lost);
     lost = undefined;
@@ -133,6 +140,7 @@ function keepConnected({ client, topics, answering, changed, ended, options }: S
     changed.next();
   });
   client.on('close', () => {
+    if (isOver) return;
     if (answering.mission === null) {
       if (!told) options.onNote(`waiting for a broker at ${options.broker}`);
       told = true;
@@ -148,7 +156,10 @@ function keepConnected({ client, topics, answering, changed, ended, options }: S
       ended.next({ ok: false, reason: `the broker refused: ${error.message}` });
     }
   });
-  ended.subscribe(() => { clearTimeout(lost); });
+  ended.subscribe(() => {
+    isOver = true;
+    clearTimeout(lost);
+  });
 }
 
 /** Nagle's algorithm off: it would hold every steer back for a delayed acknowledgement. */

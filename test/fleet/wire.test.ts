@@ -46,10 +46,10 @@ describe('the digest of a run', () => {
   it('is the same where the script reboots agents, with their memory lost and kept', async () => {
     const trial = trialFrom(SMOKE, { seed: 4, sets: [
       'faults.+={ at: 40 s, for: 30 s, kind: reboot, vehicle: amber }',
-      'faults.+={ at: 610 s, for: 20 s, kind: reboot, vehicle: [cobalt, jade], memory: kept }',
-      'faults.+={ at: 650 s, for: 5 s, kind: reboot, vehicle: amber, memory: lost }',
+      'faults.+={ at: 80 s, for: 20 s, kind: reboot, vehicle: [cobalt, jade], memory: kept }',
+      'faults.+={ at: 110 s, for: 5 s, kind: reboot, vehicle: amber, memory: lost }',
     ] });
-    const ticks = 700;
+    const ticks = 140;
     const { result, refused } = await runOverProcesses({ trial, ticks, more: { keepsMemory: true } });
     expect(result).toMatchObject({ ok: true, ticks, digest: await digestInProcess(trial, ticks, true) });
     expect(Object.values(refused).every((count) => count === 0)).toBe(true);

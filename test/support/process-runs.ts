@@ -1,4 +1,5 @@
 /** Runs with agents as processes, for tests: broker, agents, run, and all of it gone afterwards. */
+import { readFileSync } from 'node:fs';
 import { pacedAgents } from '../../hil-sim/run/paced.ts';
 import { processAgents, type ProcessAgents, type ProcessOptions } from '../../hil-sim/run/processes.ts';
 import type { RunResult, Watcher } from '../../hil-sim/run/run-trial.ts';
@@ -50,11 +51,10 @@ export async function runOverProcesses(run: ProcessRun): Promise<ProcessRunResul
   }
 }
 
-/** Whether a process is there; a zombie is not. */
+/** Whether a process is there; one that has ended and whose parent has not yet looked is not. */
 export function isAlive(pid: number): boolean {
   try {
-    process.kill(pid, 0);
-    return true;
+    return !/\) Z /.test(readFileSync(`/proc/${pid}/stat`, 'utf8'));
   } catch {
     return false;
   }
