@@ -47,7 +47,8 @@ function repeatCommand(trialPath: string, options: BenchOptions, trial: Trial): 
 /** Runs the command and answers the exit status. */
 export async function runBench(trialPath: string, options: BenchOptions): Promise<number> {
   const seeds = options.seeds ?? [options.seed];
-  const loaded = loadTrial(trialPath, seeds[0] === undefined ? { sets: options.set } : { sets: options.set, seed: seeds[0] });
+  const sets = options.set;
+  const loaded = loadTrial(trialPath, seeds[0] === undefined ? { sets } : { sets, seed: seeds[0] });
   if (!loaded.ok) {
     complain(loaded.problems.map(formatProblem));
     complain([`${loaded.problems.length} problem${loaded.problems.length === 1 ? '' : 's'}; nothing was run`]);
@@ -71,7 +72,8 @@ export async function runBench(trialPath: string, options: BenchOptions): Promis
     const path = options.out ?? newRunFolder(name, trial.seed);
     const folder = openFolder(options.seeds === undefined ? path : join(path, `seed-${trial.seed}`), trial);
     if (folder === null) return EXIT.usage;
-    const outcome = await runInFolder({ trial, folder, bench, options, repeat: repeatCommand(trialPath, options, trial) });
+    const repeat = repeatCommand(trialPath, options, trial);
+    const outcome = await runInFolder({ trial, folder, bench, options, repeat });
     if (outcome === null) return EXIT.failed;
     outcomes.push(outcome);
     reports.push(join(folder.path, 'report.html'));
@@ -124,13 +126,18 @@ async function runInFolder(job: Job): Promise<Outcome | null> {
     sea, agents, watchers, signal,
     ticks: Math.round(trial.duration / trial.tick),
     tickS: trial.tick,
-    onProgress: (tick, ticks) => progress.show(tick / ticks, `${trial.title}, seed ${trial.seed}, tick ${tick} of ${ticks}`),
+    onProgress: (tick, ticks) => {
+      progress.show(tick / ticks, `${trial.title}, seed ${trial.seed}, tick ${tick} of ${ticks}`);
+    },
   }));
   progress.end();
   if (!result.ok) {
     await folder.abandon();
     const who = result.vehicle === null ? '' : ` (vehicle ${result.vehicle})`;
-    complain([`the bench failed at tick ${result.tick}${who}: ${result.reason}`, `${folder.path} is readable to there`]);
+    complain([
+      `the bench failed at tick ${result.tick}${who}: ${result.reason}`,
+      `${folder.path} is readable to there`,
+    ]);
     return null;
   }
   const report = finishMeasures(measures);

@@ -41,7 +41,9 @@ function seedRange(text: string): number[] {
   const range = /^(\d+)\.\.(\d+)$/.exec(text);
   if (range === null) return text.split(',').map(seedNumber);
   const [first, last] = [seedNumber(range[1]!), seedNumber(range[2]!)];
-  if (last < first || last - first >= 1000) throw new InvalidArgumentError('a range runs upward, over 1000 seeds at most.');
+  if (last < first || last - first >= 1000) {
+    throw new InvalidArgumentError('a range runs upward, over 1000 seeds at most.');
+  }
   return Array.from({ length: last - first + 1 }, (_, index) => first + index);
 }
 
@@ -76,7 +78,8 @@ const bench = program
     (value: string, earlier: string[]) => [...earlier, value], [] as string[])
   .option('--restart', 'start a dead agent again, from its memory if it has one')
   .option('--json', 'print outcome.json, and nothing else, on standard output')
-  .addHelpText('after', '\nExit status: 0 limits met, 1 a limit not met, 2 bad input or usage, 3 the bench itself failed.\n'
+  .addHelpText('after', '\nExit status: 0 limits met, 1 a limit not met, 2 bad input or usage, '
+    + '3 the bench itself failed.\n'
     + '\nExamples:\n  drywake bench configs/trials/marrow-bank.yaml\n'
     + '  drywake bench configs/trials/marrow-bank.yaml --in-process --seed 7 --set modem.link.loss="40 %"')
   .action(async (trial: string, options) => {

@@ -4,8 +4,8 @@ import { z } from 'zod';
 export const tick = z.int().min(0).max(10_000_000).describe('tick number, from 0');
 export const name = z
   .string()
-  .regex(/^[a-z][a-z0-9-]{0,23}$/)
-  .describe('lower-case letters, digits and hyphens; starts with a letter; 24 at most');
+  .regex(/^(?!sea$)[a-z][a-z0-9-]{0,23}$/)
+  .describe('lower-case letters, digits and hyphens; starts with a letter; 24 at most; not `sea`');
 export const metres = z.number().min(-1e6).max(1e6);
 export const eastM = metres.describe('metres east of the datum');
 export const northM = metres.describe('metres north of the datum');

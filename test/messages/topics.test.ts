@@ -1,5 +1,6 @@
 import * as fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
+import { name } from '../../messages/fields.ts';
 import {
   SEA_TOPICS, VEHICLE_TOPICS, benchNameFrom, everyVehicle, isBenchName, readTopic, seaTopic, vehicleTopic,
 } from '../../messages/topics.ts';
@@ -48,6 +49,16 @@ describe('topics', () => {
         ? seaTopic(reading.bench, reading.what)
         : vehicleTopic(reading.bench, reading.vehicle, reading.what)).toBe(topic);
     }));
+  });
+});
+
+describe('the name of a vehicle', () => {
+  it.each([
+    ['amber', true], ['amber-2', true], ['seal', true], ['sea', false], ['Amber', false], ['2a', false], ['', false],
+    ['a'.repeat(24), true], ['a'.repeat(25), false], ['a/b', false], ['a+', false], ['a\n', false],
+  ])('%j may stand: %s', (text, may) => {
+    expect(name.safeParse(text).success).toBe(may);
+    if (may) expect(readTopic(vehicleTopic('b', text, 'steer'))).toMatchObject({ vehicle: text });
   });
 });
 
