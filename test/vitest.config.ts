@@ -4,7 +4,6 @@ export default defineConfig({
   test: {
     root: new URL('..', import.meta.url).pathname,
     include: ['test/**/*.test.ts'],
-    benchmark: { include: ['test/bench/**/*.bench.ts'] },
     testTimeout: 60_000,
     hookTimeout: 60_000,
     maxWorkers: 2,
