@@ -121,6 +121,13 @@ export const SETTINGS = {
     max: 0.5,
     says: 'growth of the log scale error, sd after an hour',
   },
+  surprise: {
+    unit: 'count',
+    default: 22,
+    min: 5,
+    max: 1_000_000,
+    says: 'summed misfit of notes beyond which water, compass and log are held to have changed',
+  },
   startSigma: {
     unit: 'm',
     default: 10,

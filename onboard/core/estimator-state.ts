@@ -38,7 +38,10 @@ export interface Memory {
   lastEastMps: number;
   lastNorthMps: number;
   sinceSpread: number;
+  /** Fixes in a row that failed the gate, and how far off the last of them was. */
   refused: number;
+  refusedEastM: number;
+  refusedNorthM: number;
   /** Whether this agent has issued a note since it started. */
   hasIssued: boolean;
   /** The greatest number that any peer has said of this vehicle's own notes. */
@@ -59,6 +62,8 @@ export interface Estimator {
   readonly track: Track;
   readonly position: PositionAnswer;
   readonly memory: Memory;
+  /** Scratch: a current. */
+  readonly drift: Float64Array;
 }
 
 function planOf(mission: Mission): FilterPlan {
@@ -81,6 +86,7 @@ function planOf(mission: Mission): FilterPlan {
     biasGrowth: radFromDeg(onboard.compassDrift_deg) ** 2 / HOUR_S,
     scaleGrowth: onboard.logDrift ** 2 / HOUR_S,
     noteSigmaMps: onboard.noteSigma_mps,
+    surprise: onboard.surprise,
   });
 }
 
@@ -98,6 +104,7 @@ export function startEstimator(mission: Mission): Estimator {
     anchor: { eastM: start.east_m, northM: start.north_m, sigmaM, noteNumber: 0, isFix: false },
     rows: { east: new Float64Array(plan.size), north: new Float64Array(plan.size) },
     track: startTrack(),
+    drift: new Float64Array(2),
     position: {
       eastM: start.east_m,
       northM: start.north_m,
@@ -112,6 +119,8 @@ export function startEstimator(mission: Mission): Estimator {
       lastNorthMps: 0,
       sinceSpread: SPREAD_TICKS,
       refused: 0,
+      refusedEastM: 0,
+      refusedNorthM: 0,
       hasIssued: false,
       ownNumberHeard: 0,
       isLost: false,

@@ -7,10 +7,8 @@
  *   · the errors of a note's new fix while the note is taken in (2)
  *
  * Time of the state is the end of the last note taken in (`take-note.ts`). Everything is in flat
- * arrays, sized at start. Matérn-3/2: σ² e^(−λt)(1 + λt), λ = √3 over the decorrelation time; value and
- * rate make it a two-state process (Hartikainen and Särkkä 2010, from memory).
+ * arrays, sized at start. `predict.ts` moves it in time, `update.ts` takes in a measurement.
  */
-import { assert } from '../../messages/assert.ts';
 import type { Basis } from './basis.ts';
 
 export interface FilterPlan {
@@ -28,6 +26,8 @@ export interface FilterPlan {
   readonly biasGrowth: number;
   readonly scaleGrowth: number;
   readonly noteSigmaMps: number;
+  /** Misfit, summed over an origin's notes, at which water and sensors are held to have changed. */
+  readonly surprise: number;
   /** Where things stand in the state. */
   readonly valueAt: number;
   readonly rateAt: number;
@@ -45,7 +45,11 @@ interface Scratch {
   readonly modes: { readonly east: Float64Array; readonly north: Float64Array };
   readonly rowEast: Float64Array;
   readonly rowNorth: Float64Array;
-  readonly gain: Float64Array;
+  /** P row', east and north; then scaled. */
+  readonly gainEast: Float64Array;
+  readonly gainNorth: Float64Array;
+  /** Innovation east, north; its variance east, covariance, variance north. */
+  readonly innovation: Float64Array;
 }
 
 export interface Filter {
@@ -53,13 +57,16 @@ export interface Filter {
   readonly covariance: Float64Array;
   /** Number of the last note taken in, per origin; 0 if none. */
   readonly lastNumber: Int32Array;
+  /** How far, per origin, its notes have lately been off beyond what was expected (`take-note.ts`). */
+  readonly misfit: Float64Array;
   /** Time of the state; notes taken in. */
   readonly clock: { atS: number; cursor: number };
 }
 
 export const TIDE_AT = 2;
 export const CURRENT_STATES = 6;
-const NEVER = -1e9;
+/** Time of a filter that has taken in nothing. */
+export const NEVER = -1e9;
 
 export type PlanNumbers = Omit<
   FilterPlan,
@@ -89,7 +96,9 @@ export function layOut(numbers: PlanNumbers): FilterPlan {
       modes: { east: new Float64Array(count), north: new Float64Array(count) },
       rowEast: new Float64Array(size),
       rowNorth: new Float64Array(size),
-      gain: new Float64Array(size),
+      gainEast: new Float64Array(size),
+      gainNorth: new Float64Array(size),
+      innovation: new Float64Array(5),
     },
   };
 }
@@ -101,6 +110,7 @@ export function startFilter(plan: FilterPlan): Filter {
     mean: new Float64Array(size),
     covariance: new Float64Array(size * size),
     lastNumber: new Int32Array(plan.fleetSize),
+    misfit: new Float64Array(plan.fleetSize),
     clock: { atS: NEVER, cursor: 0 },
   };
   resetFilter(plan, filter);
@@ -113,6 +123,7 @@ export function resetFilter(plan: FilterPlan, filter: Filter): void {
   filter.mean.fill(0);
   covariance.fill(0);
   filter.lastNumber.fill(0);
+  filter.misfit.fill(0);
   filter.clock.atS = NEVER;
   filter.clock.cursor = 0;
   const set = (at: number, sigma: number): void => {
@@ -135,101 +146,9 @@ export function copyFilter(from: Filter, to: Filter): void {
   to.mean.set(from.mean);
   to.covariance.set(from.covariance);
   to.lastNumber.set(from.lastNumber);
+  to.misfit.set(from.misfit);
   to.clock.atS = from.clock.atS;
   to.clock.cursor = from.clock.cursor;
-}
-
-/** How a mode's value and rate after `dtS` follow from those now; backwards by a straight line. */
-export interface Transition {
-  valueOfValue: number;
-  valueOfRate: number;
-  rateOfValue: number;
-  rateOfRate: number;
-  /** Share of the mode's variance that is new after `dtS`. */
-  newVariance: number;
-}
-
-export function transition(perS: number, dtS: number): Transition {
-  if (dtS <= 0) return { valueOfValue: 1, valueOfRate: dtS, rateOfValue: 0, rateOfRate: 1, newVariance: 0 };
-  const x = perS * dtS;
-  const fade = Math.exp(-x);
-  const valueOfValue = fade * (1 + x);
-  const valueOfRate = fade * dtS;
-  return {
-    valueOfValue,
-    valueOfRate,
-    rateOfValue: -fade * x * perS,
-    rateOfRate: fade * (1 - x),
-    newVariance: Math.max(0, 1 - valueOfValue ** 2 - (valueOfRate * perS) ** 2),
-  };
-}
-
-/** Moves the filter on to a later time. */
-export function predict(plan: FilterPlan, filter: Filter, atS: number): void {
-  const { clock, mean, covariance } = filter;
-  if (clock.atS === NEVER) clock.atS = atS;
-  const dtS = atS - clock.atS;
-  assert(dtS >= 0, 'a filter moves forward');
-  if (dtS === 0) return;
-  clock.atS = atS;
-  const f = transition(plan.modePerS, dtS);
-  const { size, valueAt, rateAt } = plan;
-  const { count } = plan.basis;
-  for (let mode = 0; mode < count; mode++) {
-    const value = mean[valueAt + mode]!;
-    const rate = mean[rateAt + mode]!;
-    mean[valueAt + mode] = f.valueOfValue * value + f.valueOfRate * rate;
-    mean[rateAt + mode] = f.rateOfValue * value + f.rateOfRate * rate;
-    const valueRow = (valueAt + mode) * size;
-    const rateRow = (rateAt + mode) * size;
-    for (let at = 0; at < size; at++) {
-      const v = covariance[valueRow + at]!;
-      const r = covariance[rateRow + at]!;
-      covariance[valueRow + at] = f.valueOfValue * v + f.valueOfRate * r;
-      covariance[rateRow + at] = f.rateOfValue * v + f.rateOfRate * r;
-    }
-  }
-  predictColumns(plan, filter, f);
-  addNewVariance(plan, filter, f, dtS);
-}
-
-function predictColumns(plan: FilterPlan, filter: Filter, f: Transition): void {
-  const { size, valueAt, rateAt } = plan;
-  const { count } = plan.basis;
-  const { covariance } = filter;
-  for (let row = 0; row < size; row++) {
-    const value = row * size + valueAt;
-    const rate = row * size + rateAt;
-    for (let mode = 0; mode < count; mode++) {
-      const v = covariance[value + mode]!;
-      const r = covariance[rate + mode]!;
-      covariance[value + mode] = f.valueOfValue * v + f.valueOfRate * r;
-      covariance[rate + mode] = f.rateOfValue * v + f.rateOfRate * r;
-    }
-  }
-}
-
-/** Process noise: what keeps each mode's variance at its prior, and the slow drift of the biases. */
-function addNewVariance(plan: FilterPlan, filter: Filter, f: Transition, dtS: number): void {
-  const { size, valueAt, rateAt, modePerS: perS } = plan;
-  const { covariance } = filter;
-  const variance = plan.modeSigmaMps ** 2;
-  const rateVariance = variance * perS * perS;
-  const newRate = rateVariance - f.rateOfValue ** 2 * variance - f.rateOfRate ** 2 * rateVariance;
-  const newCross = -f.valueOfValue * f.rateOfValue * variance - f.valueOfRate * f.rateOfRate * rateVariance;
-  for (let mode = 0; mode < plan.basis.count; mode++) {
-    const v = valueAt + mode;
-    const r = rateAt + mode;
-    covariance[v * size + v]! += f.newVariance * variance;
-    covariance[r * size + r]! += Math.max(0, newRate);
-    covariance[v * size + r]! += newCross;
-    covariance[r * size + v]! += newCross;
-  }
-  for (let vehicle = 0; vehicle < plan.fleetSize; vehicle++) {
-    const bias = plan.biasAt + 2 * vehicle;
-    covariance[bias * size + bias]! += plan.biasGrowth * dtS;
-    covariance[(bias + 1) * size + bias + 1]! += plan.scaleGrowth * dtS;
-  }
 }
 
 /** Makes one state a fresh, independent unknown. */
@@ -240,42 +159,6 @@ export function renewState(filter: Filter, size: number, at: number, sigma: numb
     filter.covariance[other * size + at] = 0;
   }
   filter.covariance[at * size + at] = sigma * sigma;
-}
-
-/** One scalar measurement: value = row·x + noise. The covariance stays symmetric to the last bit. */
-export function update(
-  plan: FilterPlan,
-  filter: Filter,
-  row: Float64Array,
-  measured: { value: number; variance: number },
-): void {
-  const { size } = plan;
-  const { gain } = plan.scratch;
-  const { mean, covariance } = filter;
-  gain.fill(0);
-  let expected = 0;
-  for (let at = 0; at < size; at++) {
-    const weight = row[at]!;
-    if (weight === 0) continue;
-    expected += weight * mean[at]!;
-    const start = at * size;
-    for (let other = 0; other < size; other++) gain[other]! += weight * covariance[start + other]!;
-  }
-  let spread = measured.variance;
-  for (let at = 0; at < size; at++) spread += row[at]! * gain[at]!;
-  assert(spread > 0, 'an innovation has a spread');
-  const root = 1 / Math.sqrt(spread);
-  const innovation = (measured.value - expected) / spread;
-  for (let at = 0; at < size; at++) {
-    mean[at]! += gain[at]! * innovation;
-    gain[at]! *= root;
-  }
-  for (let at = 0; at < size; at++) {
-    const own = gain[at]!;
-    if (own === 0) continue;
-    const start = at * size;
-    for (let other = 0; other < size; other++) covariance[start + other]! -= own * gain[other]!;
-  }
 }
 
 /** Puts one state in the place of another, with all its correlations. */

@@ -1,26 +1,30 @@
 /**
  * What a fix does: it passes its gate or is left out, ends the leg, issues the leg's note and becomes
- * the new anchor. A fix that fails the gate is left out; several in a row mean that the gate was wrong,
- * and the last of them becomes a fresh anchor.
+ * the new anchor. A fix that fails the gate is left out, once; a second that is off in the same
+ * direction, or a third of any kind, is believed: compass, log or water have changed, and the filter,
+ * which sees it in the note, finds out which (`take-note.ts`).
  */
 import { NOTE_NUMBER_MAX, NOTE_SKIPPED_MAX, roundedNote, type Note } from '../../messages/frame.ts';
-import type { Estimator, EstimatorTick } from './estimator-state.ts';
+import type { Estimator, EstimatorTick, Memory } from './estimator-state.ts';
 import { meanCurrentAt, takeIntoMap } from './map.ts';
 import { newestNumber } from './note-log.ts';
 import { addWay, positionSpread, resetLeg, type Anchor } from './reckon.ts';
 import { midTrack, tailWay, trackCount, wayBack, type Track } from './track.ts';
 
-/** Fixes in a row that fail the gate before the gate is held to be wrong. */
+/** Fixes in a row that fail the gate before the gate is held to be wrong, whatever they say. */
 const REFUSED_MAX = 3;
+/** Two fixes are off in the same direction within this cosine, and by a ratio within these bounds. */
+const SAME_WAY_COSINE = 0.6;
+const SAME_WAY_LEAST = 0.4;
+const SAME_WAY_MOST = 3.5;
 
 type EstimatorFix = NonNullable<EstimatorTick['fix']>;
 
 /** Whether a fix is near enough to where the vehicle thinks it was; or the gate is held to be wrong. */
 export function passesGate(estimator: Estimator, fix: EstimatorFix): boolean {
-  const { memory, position, rows, map, leg, anchor, selfIndex, track } = estimator;
+  const { memory, position, rows, map, leg, anchor, selfIndex, track, drift } = estimator;
   positionSpread(map, { anchor, selfIndex, whiteM2: memory.whitePerS * leg.seconds }, rows, position);
   const then = tailWay(track, fix.atS);
-  const drift = new Float64Array(2);
   meanCurrentAt(map, { eastM: position.eastM, northM: position.northM, atS: fix.atS }, drift);
   const east = fix.eastM - (position.eastM - then.waterEastM - drift[0]! * then.seconds);
   const north = fix.northM - (position.northM - then.waterNorthM - drift[1]! * then.seconds);
@@ -30,15 +34,20 @@ export function passesGate(estimator: Estimator, fix: EstimatorFix): boolean {
   const determinant = varEast * varNorth - cross * cross;
   const distance2 =
     (varNorth * east * east - 2 * cross * east * north + varEast * north * north) / determinant;
-  if (distance2 <= estimator.mission.onboard.fixGate ** 2) {
-    memory.refused = 0;
-    return true;
-  }
-  memory.refused += 1;
-  if (memory.refused < REFUSED_MAX) return false;
-  memory.refused = 0;
-  anchor.isFix = false;
-  return true;
+  const isNear = distance2 <= estimator.mission.onboard.fixGate ** 2;
+  const isBelieved = isNear || memory.refused + 1 >= REFUSED_MAX || (memory.refused > 0 && isSameWay(memory, east, north));
+  memory.refused = isBelieved ? 0 : memory.refused + 1;
+  memory.refusedEastM = east;
+  memory.refusedNorthM = north;
+  return isBelieved;
+}
+
+/** Whether a fix is off much as the refused one before it was: a drift or a jump, not two outliers. */
+function isSameWay(memory: Memory, eastM: number, northM: number): boolean {
+  const beforeM2 = memory.refusedEastM ** 2 + memory.refusedNorthM ** 2;
+  const ratio2 = (eastM ** 2 + northM ** 2) / beforeM2;
+  const along = eastM * memory.refusedEastM + northM * memory.refusedNorthM;
+  return along > SAME_WAY_COSINE * beforeM2 * Math.sqrt(ratio2) && ratio2 >= SAME_WAY_LEAST ** 2 && ratio2 <= SAME_WAY_MOST ** 2;
 }
 
 /** Ends the leg at the fix: issues its note, if there is one, and starts the next leg there. */

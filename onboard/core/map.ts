@@ -13,11 +13,11 @@ import {
   copyFilter,
   resetFilter,
   startFilter,
-  transition,
   type Filter,
   type FilterPlan,
 } from './filter.ts';
 import { addNote, type NoteLog } from './note-log.ts';
+import { transition } from './predict.ts';
 import { takeIn } from './take-note.ts';
 
 const CHECKPOINTS_MAX = 10;

@@ -8,8 +8,9 @@
  * the position too. Nothing here grows: a leg is a handful of sums.
  */
 import { modesAt } from './basis.ts';
-import { TIDE_AT, transition, type FilterPlan } from './filter.ts';
+import { TIDE_AT, type FilterPlan } from './filter.ts';
 import { dot, filterTimeS, timesCovariance, type CurrentMap } from './map.ts';
+import { transition } from './predict.ts';
 
 /** Sums since a moment t0. */
 export interface Leg {

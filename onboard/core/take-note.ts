@@ -8,10 +8,15 @@
  *
  * Two notes in a row share a fix: the old end error is the new start error, kept in the state. Where
  * the chain is broken, or its earlier note is missing, the start error is a fresh unknown.
+ *
+ * A note that is far off, or a run of notes that are somewhat off (a one-sided cumulative sum of the
+ * normalised innovations), opens the filter up. This depends on the notes alone, in canonical order.
  */
 import type { Note } from '../../messages/frame.ts';
 import { modesAt } from './basis.ts';
-import { TIDE_AT, moveState, predict, renewState, update, type Filter, type FilterPlan } from './filter.ts';
+import { TIDE_AT, moveState, renewState, type Filter, type FilterPlan } from './filter.ts';
+import { predict } from './predict.ts';
+import { absorb, compare } from './update.ts';
 
 /** Points along a note's path, with Gauss-Legendre weights: five are exact to the ninth power. */
 const PATH_POINTS = [
@@ -20,6 +25,15 @@ const PATH_POINTS = [
 const PATH_WEIGHTS = [
   0.11846344252809454, 0.23931433524968324, 0.28444444444444444, 0.23931433524968324, 0.11846344252809454,
 ] as const;
+
+/** A note's normalised misfit is 2 on average; what exceeds this adds up. */
+const MISFIT_ALLOWED = 4;
+/** What a surprise adds: to compass bias, log scale, new fix, uniform current, share of the modes' prior. */
+const OPEN_BIAS_RAD = 0.1;
+const OPEN_SCALE = 0.05;
+const OPEN_FIX_M = 30;
+const OPEN_UNIFORM_MPS = 0.1;
+const OPEN_MODES = 0.5;
 
 /** Writes the rows of the mean current over a note's path, for the state at the note's end. */
 function writePathRows(plan: FilterPlan, note: Note): void {
@@ -81,11 +95,46 @@ export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
   rowNorth[fix + 1] = -1 / note.durationS;
   rowEast[newFixAt] = 1 / note.durationS;
   rowNorth[newFixAt + 1] = 1 / note.durationS;
-  const variance = plan.noteSigmaMps ** 2;
-  update(plan, filter, rowEast, { value: note.currentEastMps - plan.given.east, variance });
-  update(plan, filter, rowNorth, { value: note.currentNorthMps - plan.given.north, variance });
+  const pair = {
+    east: note.currentEastMps - plan.given.east,
+    north: note.currentNorthMps - plan.given.north,
+    variance: plan.noteSigmaMps ** 2,
+  };
+  if (isSurprising(plan, filter, origin, compare(plan, filter, pair))) {
+    openUp(plan, filter, origin);
+    compare(plan, filter, pair);
+  }
+  absorb(plan, filter);
   moveState(filter, size, newFixAt, fix);
   moveState(filter, size, newFixAt + 1, fix + 1);
   filter.lastNumber[origin] = note.number;
   filter.clock.cursor += 1;
+}
+
+/** Counts a note's misfit; true if with it the origin's notes have become too unlikely. */
+function isSurprising(plan: FilterPlan, filter: Filter, origin: number, distance2: number): boolean {
+  const { misfit } = filter;
+  misfit[origin] = Math.max(0, misfit[origin]! + distance2 - MISFIT_ALLOWED);
+  if (misfit[origin]! <= plan.surprise) return false;
+  misfit[origin] = 0;
+  return true;
+}
+
+/**
+ * Something has changed: the origin's compass or log, the water, or its last fix was wrong. All of them
+ * become uncertain again, so that this and the next notes, of all vehicles, can tell which it was.
+ */
+function openUp(plan: FilterPlan, filter: Filter, origin: number): void {
+  const { covariance } = filter;
+  const { size } = plan;
+  const add = (at: number, sigma: number): void => {
+    covariance[at * size + at]! += sigma * sigma;
+  };
+  add(plan.biasAt + 2 * origin, OPEN_BIAS_RAD);
+  add(plan.biasAt + 2 * origin + 1, OPEN_SCALE);
+  add(plan.newFixAt, OPEN_FIX_M);
+  add(plan.newFixAt + 1, OPEN_FIX_M);
+  add(0, OPEN_UNIFORM_MPS);
+  add(1, OPEN_UNIFORM_MPS);
+  for (let mode = 0; mode < plan.basis.count; mode++) add(plan.valueAt + mode, OPEN_MODES * plan.modeSigmaMps);
 }

@@ -18,6 +18,7 @@ export function planFor(change: Partial<PlanNumbers> = {}, modes = 12): FilterPl
     biasGrowth: 0,
     scaleGrowth: 0,
     noteSigmaMps: 0.002,
+    surprise: 1e6,
     ...change,
   });
 }

@@ -71,7 +71,7 @@ export function runStudy(options: StudyOptions): StudyResult {
   const vehicles = Array.from({ length: fleetSize }, (_, index) => ringVehicle({ seed, index, fleetSize, water }, sensors, options.upsets?.[index]));
   const estimators = vehicles.map((vehicle, index) => startEstimator(missionOf(vehicle, { index, fleetSize, sensors, settings: options.settings ?? {} })));
   const random = randomFrom(555 + seed);
-  const tallies = { map: new Mean(), mapNees: new Mean(), here: new Mean(), position: new Mean(), positionNees: new Mean(), bias: new Mean(), biasNees: new Mean(), scale: new Mean(), scaleNees: new Mean() };
+  const tallies = newTallies();
   let post: Post[] = [];
   for (let atS = 0; atS <= hours * 3600; atS++) {
     for (const { to, note } of post.filter((letter) => letter.atS <= atS)) takeNote(estimators[to]!, note);
@@ -84,12 +84,12 @@ export function runStudy(options: StudyOptions): StudyResult {
       workEstimator(estimator);
     });
     if (atS % 60 !== 0) continue;
-    const before = { map: tallies.map.sum, count: tallies.map.count, position: tallies.position.sum, positions: tallies.position.count };
-    if (atS >= fromS || options.watch) judge(atS, { estimators, vehicles, truths, water }, tallies);
-    options.watch?.(atS, estimators, {
-      mapMps: Math.sqrt((tallies.map.sum - before.map) / (tallies.map.count - before.count)),
-      positionM: Math.sqrt((tallies.position.sum - before.position) / (tallies.position.count - before.positions)),
-    });
+    const truth = { estimators, vehicles, truths, water };
+    if (atS >= fromS) judge(atS, truth, tallies);
+    if (options.watch === undefined) continue;
+    const now = newTallies();
+    judge(atS, truth, now);
+    options.watch(atS, estimators, { mapMps: Math.sqrt(now.map.mean), positionM: Math.sqrt(now.position.mean) });
   }
   const root = (mean: Mean): number => Math.sqrt(mean.mean);
   return {
@@ -114,6 +114,11 @@ function missionOf(vehicle: RingVehicle, of: { index: number; fleetSize: number;
     },
     onboard: { ...defaultSettings(), ...settings },
   });
+}
+
+function newTallies(): Tallies {
+  const of = (): Mean => new Mean();
+  return { map: of(), mapNees: of(), here: of(), position: of(), positionNees: of(), bias: of(), biasNees: of(), scale: of(), scaleNees: of() };
 }
 
 type Tallies = Record<'map' | 'mapNees' | 'here' | 'position' | 'positionNees' | 'bias' | 'biasNees' | 'scale' | 'scaleNees', Mean>;

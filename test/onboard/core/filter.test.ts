@@ -4,8 +4,10 @@
  */
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { predict, startFilter, transition, update, type Filter, type FilterPlan } from '../../../onboard/core/filter.ts';
+import { startFilter, type Filter, type FilterPlan } from '../../../onboard/core/filter.ts';
+import { predict, transition } from '../../../onboard/core/predict.ts';
 import { takeIn } from '../../../onboard/core/take-note.ts';
+import { absorb, compare } from '../../../onboard/core/update.ts';
 import { planFor, someNotes } from '../../support/estimating.ts';
 
 /** A filter in which states 0 and 1 are all that matters. */
@@ -17,22 +19,25 @@ function scalar(plan: FilterPlan, mean: number, variance: number): Filter {
   return filter;
 }
 
-const rowOf = (plan: FilterPlan, weights: readonly number[]): Float64Array => {
-  const row = new Float64Array(plan.size);
-  row.set(weights);
-  return row;
-};
+/** Takes in a measurement of the states 0 and 1; answers the normalised innovation squared. */
+function measure(plan: FilterPlan, filter: Filter, pair: { east: number; north: number; variance: number }): number {
+  plan.scratch.rowEast.fill(0)[0] = 1;
+  plan.scratch.rowNorth.fill(0)[1] = 1;
+  const distance2 = compare(plan, filter, pair);
+  absorb(plan, filter);
+  return distance2;
+}
 
 const MEASURED = [48.54, 47.11, 55.01, 55.15, 49.89, 40.85, 46.72, 50.05, 51.27, 49.95];
 const ESTIMATES = [49.6860, 48.4658, 50.5693, 51.6835, 51.3326, 49.6173, 49.2098, 49.3134, 49.5282, 49.5699];
 const VARIANCES = [22.5, 11.8421, 8.0357, 6.0811, 4.8913, 4.0909, 3.5156, 3.0822, 2.7439, 2.4725];
 
-describe('update', () => {
+describe('compare and absorb', () => {
   it('gives the published estimates of a constant state, and the information form the same end value', () => {
     const plan = planFor();
     const filter = scalar(plan, 60, 225);
     MEASURED.forEach((value, index) => {
-      update(plan, filter, rowOf(plan, [1]), { value, variance: 25 });
+      measure(plan, filter, { east: value, north: 0, variance: 25 });
       expect(filter.mean[0]).toBeCloseTo(ESTIMATES[index]!, 4);
       expect(filter.covariance[0]).toBeCloseTo(VARIANCES[index]!, 4);
     });
@@ -46,8 +51,11 @@ describe('update', () => {
     const plan = planFor();
     const filter = scalar(plan, 0, 0.25);
     filter.covariance[plan.size + 1] = 0.25;
-    update(plan, filter, rowOf(plan, [1, 0]), { value: 0.3, variance: 0.04 });
-    update(plan, filter, rowOf(plan, [0, 1]), { value: -0.2, variance: 0.09 });
+    // Unequal variances: north is measured in units of 1.5 standard deviations.
+    filter.covariance[plan.size + 1]! /= 1.5 ** 2;
+    expect(measure(plan, filter, { east: 0.3, north: -0.2 / 1.5, variance: 0.04 })).toBeCloseTo(0.42799189, 8);
+    filter.mean[1]! *= 1.5;
+    filter.covariance[plan.size + 1]! *= 1.5 ** 2;
     expect([filter.mean[0], filter.mean[1]]).toEqual([expect.closeTo(0.25862069, 8), expect.closeTo(-0.14705882, 8)]);
     expect(filter.covariance[0]).toBeCloseTo(0.03448276, 8);
     expect(filter.covariance[plan.size + 1]).toBeCloseTo(0.06617647, 8);
