@@ -107,6 +107,11 @@ for (const [name, description] of Object.entries(NOT_BUILT_COMMANDS)) {
     .action(() => refuse(`drywake ${name}`));
 }
 
+// A reader that has seen enough (`| head`) is no failure of ours.
+process.stdout.on('error', (error: NodeJS.ErrnoException) => {
+  if (error.code !== 'EPIPE') throw error;
+});
+
 try {
   await program.parseAsync();
 } catch (error) {

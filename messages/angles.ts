@@ -15,9 +15,10 @@ export function degFromRad(angleRad: number): number {
   return angleRad / RAD_PER_DEG;
 }
 
-/** A heading in radians, any turn, to degrees true in [0, 360). */
-export function headingDegFromRad(headingRad: number): number {
+/** A heading in radians, any turn, to degrees true in [0, 360), rounded to `stepsPerDeg` if given. */
+export function headingDegFromRad(headingRad: number, stepsPerDeg = 0): number {
   const turned = degFromRad(headingRad) % 360;
   const positive = turned < 0 ? turned + 360 : turned;
-  return positive >= 360 ? 0 : positive + 0;
+  const stepped = stepsPerDeg > 0 ? Math.round(positive * stepsPerDeg) / stepsPerDeg : positive;
+  return stepped >= 360 ? 0 : stepped + 0;
 }

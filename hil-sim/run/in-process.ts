@@ -21,23 +21,31 @@ export function inProcessAgents(missions: readonly Mission[], keepsMemory = fals
   return startAgents(missions, keepsMemory).agents;
 }
 
-function startAgents(missions: readonly Mission[], keepsMemory = false): {
-  agents: SyncAgents; states: readonly (State | null)[];
+function startAgents(
+  missions: readonly Mission[],
+  keepsMemory = false,
+): {
+  agents: SyncAgents;
+  states: readonly (State | null)[];
 } {
   const states: (State | null)[] = missions.map((mission) => start(mission));
   const kept = new Array<Buffer | null>(missions.length).fill(null);
   const agents: SyncAgents = {
-    answer: (senses) => senses.map((sense, index) => {
-      const state = states[index];
-      if (sense === null || state === null || state === undefined) return null;
-      const steer = normalise(step(state, normalise(sense)));
-      if (keepsMemory && (sense.tick * state.mission.tick_s) % CHECKPOINT_S === 0) kept[index] = serialize(state);
-      return steer;
-    }),
+    answer: (senses) =>
+      senses.map((sense, index) => {
+        const state = states[index];
+        if (sense === null || state === null || state === undefined) return null;
+        const steer = normalise(step(state, normalise(sense)));
+        if (keepsMemory && (sense.tick * state.mission.tick_s) % CHECKPOINT_S === 0)
+          kept[index] = serialize(state);
+        return steer;
+      }),
     restart(index, phase, memory) {
       const saved = kept[index] ?? null;
       if (phase === 'down') states[index] = null;
-      else states[index] = memory === 'kept' && saved !== null ? deserialize(saved) as State : start(missions[index]!);
+      else
+        states[index] =
+          memory === 'kept' && saved !== null ? (deserialize(saved) as State) : start(missions[index]!);
     },
     close: () => undefined,
   };
@@ -58,10 +66,16 @@ export function yardstickAgents(missions: readonly Mission[], sea: Sea, kind: Ya
     ...agents,
     answer(senses) {
       const notes = made.splice(0);
-      const steers = agents.answer(senses.map((sense, index) => (sense === null ? null : {
-        ...sense,
-        aid: kind === 'central' ? { kind, notes } : knownAid(sea, index, points),
-      })));
+      const steers = agents.answer(
+        senses.map((sense, index) =>
+          sense === null
+            ? null
+            : {
+                ...sense,
+                aid: kind === 'central' ? { kind, notes } : knownAid(sea, index, points),
+              },
+        ),
+      );
       for (const state of states) {
         const note = state?.counts.issued ?? null;
         if (note !== null) made.push(note);
@@ -72,7 +86,11 @@ export function yardstickAgents(missions: readonly Mission[], sea: Sea, kind: Ya
 }
 
 function withGivenCurrent(mission: Mission): Mission {
-  const none = { uniformSigma_mps: GIVEN_SIGMA_MPS, tideSigma_mps: GIVEN_SIGMA_MPS, mapSigma_mps: GIVEN_SIGMA_MPS };
+  const none = {
+    uniformSigma_mps: GIVEN_SIGMA_MPS,
+    tideSigma_mps: GIVEN_SIGMA_MPS,
+    mapSigma_mps: GIVEN_SIGMA_MPS,
+  };
   return { ...mission, sharing: 'solo', onboard: { ...mission.onboard, ...none } };
 }
 
@@ -82,7 +100,10 @@ function loopPoints(mission: Mission): { eastM: number; northM: number }[] {
   const sense = turn === 'clockwise' ? 1 : -1;
   return Array.from({ length: MAP_POINTS }, (_, point) => {
     const bearingRad = (sense * 2 * Math.PI * point) / MAP_POINTS;
-    return { eastM: centre.east_m + radiusM * Math.sin(bearingRad), northM: centre.north_m + radiusM * Math.cos(bearingRad) };
+    return {
+      eastM: centre.east_m + radiusM * Math.sin(bearingRad),
+      northM: centre.north_m + radiusM * Math.cos(bearingRad),
+    };
   });
 }
 

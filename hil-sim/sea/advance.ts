@@ -16,12 +16,15 @@ import { addedCurrents, changesAt, compassBiasAt, logScaleAt, ordersAt, rebootAt
 import { endArrivals, sendFrames, startModem, type Delivery, type ModemState } from './modem.ts';
 import type { SeaPlan } from './plan.ts';
 import type { Hearing, Reboot, Sea, Truth } from './sea.ts';
-import { drawBiases, onboardTimeS, readCompassAndLog, readFix, startFixes, type FixState } from './sensors.ts';
+import { depthReading, drawBiases, onboardTimeS, readCompassAndLog, readFix, startFixes, type FixState } from './sensors.ts';
 import { soundSpeedMps } from './sound.ts';
 import { currentAt, type Water } from './water.ts';
 
 /** Depth at which the sound speed is taken: half of the water, 100 m at most. */
 const SOUND_DEPTH_MAX_M = 100;
+
+/** Steps in which the battery gauge shows its share. */
+const BATTERY_STEPS = 1e6;
 
 interface State {
   readonly plan: SeaPlan;
@@ -77,7 +80,7 @@ export function startSea(plan: SeaPlan): Sea {
     orders: plan.vehicles.map((vehicle) => ({
       heading_deg: degFromRad(vehicle.startHeadingRad), speed_mps: 0, depth_m: vehicle.startDepthM,
     })),
-    fixes: startFixes(plan.vehicles.length),
+    fixes: startFixes(draw, plan.vehicles),
     modem: startModem(plan, soundSpeedMps(temperatureDegC, salinityPsu, Math.min(depthM / 2, SOUND_DEPTH_MAX_M))),
     scratch: new Float64Array(2),
     counts: { tick: 0 },
@@ -134,8 +137,8 @@ function perceive(state: State): readonly (Sense | null)[] {
       at_s: onboardTimeS(vehicle, tick * plan.tickS),
       heading_deg,
       speed_mps,
-      depth_m: truth.depthM[index]!,
-      battery: truth.battery[index]!,
+      depth_m: depthReading(truth.depthM[index]!),
+      battery: Math.round(truth.battery[index]! * BATTERY_STEPS) / BATTERY_STEPS,
       fix,
       heard: heard[index]!,
       orders: ordersAt(plan.orders, index, { timeS: tick * plan.tickS, tickS: plan.tickS }),

@@ -205,7 +205,7 @@ export function endArrivals(
       continue;
     }
     const hearer = modem.plan.vehicles[arrival.toIndex]!;
-    const frame = { at_s: onboardTimeS(hearer, arrival.heardS), bytes: arrival.hex };
+    const frame = { at_s: Math.round(onboardTimeS(hearer, arrival.heardS) * 1e6) / 1e6, bytes: arrival.hex };
     into.deliveries.push({ toIndex: arrival.toIndex, frame, hearing });
   }
 }

@@ -2,7 +2,8 @@
  * From truth to what a vehicle perceives: compass, log, onboard clock and position fix.
  *
  * Compass = true heading + bias + white noise; log = speed·(1 + scale) + white noise; clock =
- * (1 + drift)·t + offset; a fix has independent normal errors per axis. Bias and scale are drawn once
+ * (1 + drift)·t + offset; a fix has independent normal errors per axis. Readings come in steps far finer
+ * than their noise: 0.0001°, 0.01 mm/s, 1 mm. Bias and scale are drawn once
  * per vehicle and seed, unless the plan fixes them. Fixes come every `fixEveryS` from a drawn moment
  * of the first period on, so that the fleet's fixes do not fall on one tick; a fix by surface needs a
  * depth of less than a metre; with latency it arrives later and says when it was true.
@@ -15,9 +16,25 @@ import type { FaultPlan, FixUpset, VehiclePlan } from './plan.ts';
 import type { Truth } from './sea.ts';
 
 const SURFACE_DEPTH_M = 1;
+/** Steps per degree, per m/s, per metre. */
+const HEADING_STEPS = 1e4;
+const SPEED_STEPS = 1e5;
+const LENGTH_STEPS = 1e3;
+
+/** A reading on its instrument's scale. */
+function stepped(value: number, stepsPerUnit: number): number {
+  return Math.round(value * stepsPerUnit) / stepsPerUnit + 0;
+}
+
+/** What a depth gauge shows of a depth. */
+export function depthReading(depthM: number): number {
+  return stepped(depthM, LENGTH_STEPS);
+}
 
 /** A fix that was measured and has not arrived, or null; one per vehicle. */
 export interface FixState {
+  /** When the first fix falls due: a drawn moment of the first period. */
+  readonly firstS: Float64Array;
   readonly waiting: (Fix | null)[];
   /** Tick at which the waiting fix arrives. */
   readonly arrivesTick: Int32Array;
@@ -25,8 +42,11 @@ export interface FixState {
   readonly measured: Uint32Array;
 }
 
-export function startFixes(count: number): FixState {
+export function startFixes(draw: Draw, vehicles: readonly VehiclePlan[]): FixState {
+  const count = vehicles.length;
   return {
+    firstS: Float64Array.from(vehicles, (vehicle, index) =>
+      vehicle.fixEveryS * uniform(draw, { entity: index, purpose: PURPOSE.fixStagger, count: 0 })),
     waiting: new Array<Fix | null>(count).fill(null),
     arrivesTick: new Int32Array(count),
     measured: new Uint32Array(count),
@@ -64,14 +84,13 @@ export function readCompassAndLog(at: SensorTick): { heading_deg: number; speed_
   normalPair(at.draw, { entity: index, purpose: PURPOSE.compassNoise, count: at.tick }, scratch);
   const headingRad = truth.headingRad[index]! + truth.compassBiasRad[index]! + plan.compassSigmaRad * scratch[0]!;
   const speedMps = truth.speedMps[index]! * (1 + truth.logScale[index]!) + plan.logSigmaMps * scratch[1]!;
-  return { heading_deg: headingDegFromRad(headingRad), speed_mps: speedMps + 0 };
+  return { heading_deg: headingDegFromRad(headingRad, HEADING_STEPS), speed_mps: stepped(speedMps, SPEED_STEPS) };
 }
 
 /** Measures a fix if one falls on this tick, and hands over the one that arrives in it. */
 export function readFix(at: SensorTick, fixes: FixState): Fix | null {
-  const { draw, plan, truth, index, tick, tickS } = at;
-  const firstS = plan.fixEveryS * uniform(draw, { entity: index, purpose: PURPOSE.fixStagger, count: 0 });
-  const dueS = firstS + plan.fixEveryS * fixes.measured[index]!;
+  const { plan, truth, index, tick, tickS } = at;
+  const dueS = fixes.firstS[index]! + plan.fixEveryS * fixes.measured[index]!;
   if (tick * tickS >= dueS) {
     const count = fixes.measured[index]!;
     fixes.measured[index] = count + 1;
@@ -99,8 +118,8 @@ function measureFix(at: SensorTick, count: number, upset: FixUpset | null): Fix 
   normalPair(draw, { entity: index, purpose: PURPOSE.fixNoise, count }, scratch);
   return {
     at_s: onboardTimeS(plan, at.tick * at.tickS),
-    east_m: truth.eastM[index]! + jump.eastM + sigmaM * scratch[0]! + 0,
-    north_m: truth.northM[index]! + jump.northM + sigmaM * scratch[1]! + 0,
+    east_m: stepped(truth.eastM[index]! + jump.eastM + sigmaM * scratch[0]!, LENGTH_STEPS),
+    north_m: stepped(truth.northM[index]! + jump.northM + sigmaM * scratch[1]!, LENGTH_STEPS),
     sigma_m: plan.fixSigmaM,
   };
 }

@@ -31,6 +31,11 @@ import { MAP_POINTS, type State } from './state.ts';
 import { frameTime, isTimeToSay, nextSequence, readHeard } from './talk.ts';
 
 const MINUTE_S = 60;
+/** Steps a unit to which messages are rounded: finer than anything means, and short to write. */
+const TO_1E3 = 1e3;
+const TO_1E4 = 1e4;
+const TO_1E6 = 1e6;
+const TO_1E9 = 1e9;
 /** One point of the loop has its uncertainty renewed every so many ticks, the own place at every so many. */
 const SIGMA_POINT_TICKS = 4;
 const SIGMA_HERE_TICKS = 15;
@@ -51,9 +56,9 @@ export function step(state: State, sense: Sense | AidedSense): Steer {
   const out = state.guidanceOut;
   return {
     tick: sense.tick,
-    heading_deg: headingDegFromRad(out.headingRad),
-    speed_mps: out.speedMps,
-    depth_m: out.depthM,
+    heading_deg: headingDegFromRad(out.headingRad, TO_1E4),
+    speed_mps: rounded(out.speedMps, TO_1E4),
+    depth_m: rounded(out.depthM, TO_1E3),
     say: isTimeToSay(state.talk, sense.at_s, state.mission.tick_s) ? say(state, sense.at_s) : null,
     state: out.state,
     reasons: out.reasons.slice(),
@@ -191,25 +196,29 @@ function say(state: State, atS: number): string {
   );
 }
 
+function rounded(value: number, stepsPerUnit: number): number {
+  return Math.round(value * stepsPerUnit) / stepsPerUnit;
+}
+
 function estimateOf(state: State): Estimate {
   const { here, meanHere, bias } = state;
   const { position } = state.estimator;
   return {
-    east_m: position.eastM,
-    north_m: position.northM,
-    varEast_m2: position.varEastM2,
-    covEastNorth_m2: position.covEastNorthM2,
-    varNorth_m2: position.varNorthM2,
-    currentEast_mps: meanHere[0]!,
-    currentNorth_mps: meanHere[1]!,
-    varCurrentEast_m2ps2: here.varEastM2ps2,
-    covCurrentEastNorth_m2ps2: here.covEastNorthM2ps2,
-    varCurrentNorth_m2ps2: here.varNorthM2ps2,
-    phase: state.guidance.at.phase,
-    compassBias_deg: degFromRad(bias.compassBiasRad),
-    compassBiasSigma_deg: degFromRad(bias.compassBiasSigmaRad),
-    logScale: bias.logScale,
-    logScaleSigma: bias.logScaleSigma,
+    east_m: rounded(position.eastM, TO_1E3),
+    north_m: rounded(position.northM, TO_1E3),
+    varEast_m2: rounded(position.varEastM2, TO_1E4),
+    covEastNorth_m2: rounded(position.covEastNorthM2, TO_1E4),
+    varNorth_m2: rounded(position.varNorthM2, TO_1E4),
+    currentEast_mps: rounded(meanHere[0]!, TO_1E6),
+    currentNorth_mps: rounded(meanHere[1]!, TO_1E6),
+    varCurrentEast_m2ps2: rounded(here.varEastM2ps2, TO_1E9),
+    covCurrentEastNorth_m2ps2: rounded(here.covEastNorthM2ps2, TO_1E9),
+    varCurrentNorth_m2ps2: rounded(here.varNorthM2ps2, TO_1E9),
+    phase: rounded(state.guidance.at.phase, TO_1E6) % 1,
+    compassBias_deg: rounded(degFromRad(bias.compassBiasRad), TO_1E4),
+    compassBiasSigma_deg: rounded(degFromRad(bias.compassBiasSigmaRad), TO_1E4),
+    logScale: rounded(bias.logScale, TO_1E6),
+    logScaleSigma: rounded(bias.logScaleSigma, TO_1E6),
     notesHeld: noteCount(state.estimator.log),
   };
 }
@@ -217,8 +226,8 @@ function estimateOf(state: State): Estimate {
 function mapOf(state: State): MapMessage {
   const { table } = state;
   return {
-    east_mps: Array.from(table.currentEastMps),
-    north_mps: Array.from(table.currentNorthMps),
-    sigma_mps: Array.from(table.sigmaMps),
+    east_mps: Array.from(table.currentEastMps, (value) => rounded(value, TO_1E6)),
+    north_mps: Array.from(table.currentNorthMps, (value) => rounded(value, TO_1E6)),
+    sigma_mps: Array.from(table.sigmaMps, (value) => rounded(value, TO_1E6)),
   };
 }
