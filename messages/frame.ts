@@ -19,9 +19,9 @@
  *
  * A note: origin 4, number 10 (from 1), end 17 (s of the origin's clock, to 36.4 h), duration 11 (s),
  * mean current east and north 12 each (1 mm/s, ±2.047 m/s), start and end of its path 12 × 4 (2 m,
- * ±4094 m), sag 6 (2 m, ±62 m: how far the path's middle lies to the right of its chord), chained 1
- * (its first fix is the last fix of the note before), fix sigma 4 (5·2^((k−7)/2) m, 0.44 to 80 m),
- * skipped 3 (that many numbers before it were never issued).
+ * ±4094 m), sag 6 (how far the path's middle lies to the right of its chord: a signed code whose square
+ * counts 0.8 m, to ±769 m), chained 1 (its first fix is the last fix of the note before), fix sigma 4
+ * (5·2^((k−7)/2) m, 0.44 to 80 m), skipped 3 (that many numbers before it were never issued).
  *
  * Haves start at origin (5 × sequence) mod fleet size, so that in larger fleets origins take turns.
  * Both directions keep no state. Decoding answers value or reason and never throws.
@@ -47,7 +47,9 @@ const END_TIME: FixedPoint = { width: 17, step: 1, signed: false };
 const DURATION: FixedPoint = { width: 11, step: 1, signed: false };
 const CURRENT: FixedPoint = { width: 12, step: 0.001, signed: true };
 const PATH: FixedPoint = { width: 12, step: 2, signed: true };
-const SAG: FixedPoint = { width: 6, step: 2, signed: true };
+/** Of the square root of a sag in `SAG_STEP_M`: short legs sag little, long ones much. */
+const SAG: FixedPoint = { width: 6, step: 1, signed: true };
+const SAG_STEP_M = 0.8;
 const FIX_SIGMA_CODES = 16;
 /** Half octaves about 5 m, so that usual fix sigmas (1.25, 2.5, 5, 10, 20 m) are exact. */
 const FIX_SIGMA_MIDDLE_M = 5;
@@ -71,7 +73,7 @@ export interface Note {
   /** Mean over the track of (way made good − way through the water) / duration. */
   readonly currentEastMps: number;
   readonly currentNorthMps: number;
-  /** Path: from the first fix to the last, bulging by `sagM` to the right at its middle. */
+  /** Path: an arc from the first fix to the last, its middle `sagM` to the right of the chord. */
   readonly startEastM: number;
   readonly startNorthM: number;
   readonly endEastM: number;
@@ -128,6 +130,11 @@ function fixSigmaFromCode(code: number): number {
   return FIX_SIGMA_MIDDLE_M * 2 ** ((code - FIX_SIGMA_MIDDLE_CODE) / 2);
 }
 
+function sagFromCode(code: number): number {
+  const root = fromCode(SAG, code);
+  return SAG_STEP_M * root * Math.abs(root);
+}
+
 /** The note as every vehicle, its origin included, will use it: each field on its grid. */
 export function roundedNote(note: Note): Note {
   const bytes = new Uint8Array(FRAME_BYTES);
@@ -157,7 +164,7 @@ function putNote(bytes: Uint8Array, bitIndex: number, note: Note): void {
   put(PATH.width, toCode(PATH, note.startNorthM));
   put(PATH.width, toCode(PATH, note.endEastM));
   put(PATH.width, toCode(PATH, note.endNorthM));
-  put(SAG.width, toCode(SAG, note.sagM));
+  put(SAG.width, toCode(SAG, Math.sign(note.sagM) * Math.sqrt(Math.abs(note.sagM) / SAG_STEP_M)));
   put(1, note.chained ? 1 : 0);
   put(4, fixSigmaCode(note.fixSigmaM));
   put(3, note.skipped);
@@ -182,7 +189,7 @@ function getNote(bytes: Uint8Array, bitIndex: number): Note | null {
     startNorthM: fromCode(PATH, get(PATH.width)),
     endEastM: fromCode(PATH, get(PATH.width)),
     endNorthM: fromCode(PATH, get(PATH.width)),
-    sagM: fromCode(SAG, get(SAG.width)),
+    sagM: sagFromCode(get(SAG.width)),
     chained: get(1) === 1,
     fixSigmaM: fixSigmaFromCode(get(4)),
     skipped: get(3),

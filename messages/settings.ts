@@ -149,7 +149,7 @@ export const SETTINGS = {
     max: 2000,
     says: 'fixes closer together than this make no note and move no anchor',
   },
-  noteMost: { unit: 's', default: 1200, min: 2, max: 2047, says: 'a longer way between fixes makes no note' },
+  noteMost: { unit: 's', default: 2040, min: 2, max: 2047, says: 'a longer way between fixes makes no note' },
   // What the agent calls stale or uncertain, in frames and to its own steering.
   mapStale: {
     unit: 'mps',

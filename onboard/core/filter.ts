@@ -10,6 +10,7 @@
  * arrays, sized at start. `predict.ts` moves it in time, `update.ts` takes in a measurement.
  */
 import type { Basis } from './basis.ts';
+import { PATH_POINTS } from './note-path.ts';
 
 export interface FilterPlan {
   readonly basis: Basis;
@@ -43,6 +44,8 @@ export interface FilterPlan {
 /** Working memory of one filter step; holds nothing between calls. */
 interface Scratch {
   readonly modes: { readonly east: Float64Array; readonly north: Float64Array };
+  /** Points of a note's path. */
+  readonly path: Float64Array;
   readonly rowEast: Float64Array;
   readonly rowNorth: Float64Array;
   /** P row', east and north; then scaled. */
@@ -94,6 +97,7 @@ export function layOut(numbers: PlanNumbers): FilterPlan {
     given: { east: 0, north: 0 },
     scratch: {
       modes: { east: new Float64Array(count), north: new Float64Array(count) },
+      path: new Float64Array(2 * PATH_POINTS),
       rowEast: new Float64Array(size),
       rowNorth: new Float64Array(size),
       gainEast: new Float64Array(size),

@@ -15,17 +15,12 @@
 import type { Note } from '../../messages/frame.ts';
 import { modesAt } from './basis.ts';
 import { TIDE_AT, moveState, renewState, type Filter, type FilterPlan } from './filter.ts';
+import { PATH_POINTS, PATH_SHARES, PATH_WEIGHTS, writePath } from './note-path.ts';
 import { predict } from './predict.ts';
 import { absorb, compare } from './update.ts';
 
-/** Points along a note's path, with Gauss-Legendre weights: five are exact to the ninth power. */
-const PATH_POINTS = [
-  0.04691007703066802, 0.23076534494715845, 0.5, 0.7692346550528415, 0.9530899229693319,
-] as const;
-const PATH_WEIGHTS = [
-  0.11846344252809454, 0.23931433524968324, 0.28444444444444444, 0.23931433524968324, 0.11846344252809454,
-] as const;
-
+/** A long path is an arc only roughly: a tenth of its sag, in a current that changes by 10⁻⁴ per second. */
+const PATH_DOUBT_PER_S = 1e-5;
 /** A note's normalised misfit is 2 on average; what exceeds this adds up. */
 const MISFIT_ALLOWED = 4;
 /** What a surprise adds: to compass bias, log scale, new fix, uniform current, share of the modes' prior. */
@@ -37,32 +32,26 @@ const OPEN_MODES = 0.5;
 
 /** Writes the rows of the mean current over a note's path, for the state at the note's end. */
 function writePathRows(plan: FilterPlan, note: Note): void {
-  const { modes, rowEast, rowNorth } = plan.scratch;
+  const { modes, rowEast, rowNorth, path } = plan.scratch;
   rowEast.fill(0);
   rowNorth.fill(0);
   rowEast[0] = 1;
   rowNorth[1] = 1;
-  const chordEast = note.endEastM - note.startEastM;
-  const chordNorth = note.endNorthM - note.startNorthM;
-  const chordM = Math.sqrt(chordEast * chordEast + chordNorth * chordNorth);
-  const rightEast = chordM > 0 ? chordNorth / chordM : 0;
-  const rightNorth = chordM > 0 ? -chordEast / chordM : 0;
-  for (let point = 0; point < PATH_POINTS.length; point++) {
-    const share = PATH_POINTS[point]!;
+  writePath(note, path);
+  for (let point = 0; point < PATH_POINTS; point++) {
     const weight = PATH_WEIGHTS[point]!;
-    const bulgeM = 4 * share * (1 - share) * note.sagM;
-    const eastM = note.startEastM + share * chordEast + bulgeM * rightEast;
-    const northM = note.startNorthM + share * chordNorth + bulgeM * rightNorth;
-    const beforeEndS = (1 - share) * note.durationS;
+    const beforeEndS = (1 - PATH_SHARES[point]!) * note.durationS;
     const angle = plan.tidePerS * (note.endS - beforeEndS);
     rowEast[TIDE_AT]! += weight * Math.cos(angle);
     rowEast[TIDE_AT + 1]! += weight * Math.sin(angle);
-    modesAt(plan.basis, eastM, northM, modes);
+    modesAt(plan.basis, path[2 * point]!, path[2 * point + 1]!, modes);
     for (let mode = 0; mode < plan.basis.count; mode++) {
-      rowEast[plan.valueAt + mode]! += weight * modes.east[mode]!;
-      rowNorth[plan.valueAt + mode]! += weight * modes.north[mode]!;
-      rowEast[plan.rateAt + mode]! -= weight * beforeEndS * modes.east[mode]!;
-      rowNorth[plan.rateAt + mode]! -= weight * beforeEndS * modes.north[mode]!;
+      const east = weight * modes.east[mode]!;
+      const north = weight * modes.north[mode]!;
+      rowEast[plan.valueAt + mode]! += east;
+      rowNorth[plan.valueAt + mode]! += north;
+      rowEast[plan.rateAt + mode]! -= beforeEndS * east;
+      rowNorth[plan.rateAt + mode]! -= beforeEndS * north;
     }
   }
   rowNorth[TIDE_AT + 2] = rowEast[TIDE_AT]!;
@@ -98,7 +87,7 @@ export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
   const pair = {
     east: note.currentEastMps - plan.given.east,
     north: note.currentNorthMps - plan.given.north,
-    variance: plan.noteSigmaMps ** 2,
+    variance: plan.noteSigmaMps ** 2 + (PATH_DOUBT_PER_S * note.sagM) ** 2,
   };
   if (isSurprising(plan, filter, origin, compare(plan, filter, pair))) {
     openUp(plan, filter, origin);

@@ -24,7 +24,7 @@ const gridNote: fc.Arbitrary<Note> = fc.record({
   startNorthM: whole(-2047, 2047).map((code) => code * 2),
   endEastM: whole(-2047, 2047).map((code) => code * 2),
   endNorthM: whole(-2047, 2047).map((code) => code * 2),
-  sagM: whole(-31, 31).map((code) => code * 2),
+  sagM: whole(-31, 31).map((code) => 0.8 * code * Math.abs(code)),
   chained: fc.boolean(),
   fixSigmaM: whole(0, 15).map((code) => 5 * 2 ** ((code - 7) / 2)),
   skipped: whole(0, 7),
@@ -55,7 +55,7 @@ function slowFrame(frame: Frame): string {
     bits(4, note.originIndex), bits(10, note.number), bits(17, note.endS), bits(11, note.durationS),
     bits(12, Math.round(note.currentEastMps * 1000)), bits(12, Math.round(note.currentNorthMps * 1000)),
     bits(12, note.startEastM / 2), bits(12, note.startNorthM / 2), bits(12, note.endEastM / 2),
-    bits(12, note.endNorthM / 2), bits(6, note.sagM / 2), note.chained ? '1' : '0',
+    bits(12, note.endNorthM / 2), bits(6, Math.sign(note.sagM) * Math.round(Math.sqrt(Math.abs(note.sagM) / 0.8))), note.chained ? '1' : '0',
     bits(4, Math.round(Math.log2(note.fixSigmaM / 5) * 2) + 7), bits(3, note.skipped),
   ].join('');
   const body = [
@@ -94,7 +94,7 @@ describe('encodeFrame and decodeFrame', () => {
 
   it('keep the golden bytes', () => {
     expect(hexFromBytes(encodeFrame(GOLDEN_FRAME))).toBe(
-      '249a9a5db90465dc2480985914967c288079c06ff6e0226d70242626222686f3',
+      '249a9a5db90465dc2480985914967c288079c06ff6e0227770242626222642c6',
     );
   });
 

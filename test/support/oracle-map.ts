@@ -23,20 +23,32 @@ interface Functional {
 const POINTS = [-0.906179845938664, -0.5384693101056831, 0, 0.5384693101056831, 0.906179845938664];
 const WEIGHTS = [0.23692688505618908, 0.47862867049936647, 0.5688888888888889, 0.47862867049936647, 0.23692688505618908];
 
+/** The place at a share of the way along the arc: the start turned about the centre of the circle. */
+function onArc(note: Note, share: number): readonly [number, number] {
+  const start = [note.startEastM, note.startNorthM] as const;
+  const chord = [note.endEastM - start[0], note.endNorthM - start[1]] as const;
+  const length = Math.sqrt(chord[0] ** 2 + chord[1] ** 2);
+  const ahead = [chord[0] / length, chord[1] / length] as const;
+  const middle = [start[0] + chord[0] / 2 + note.sagM * ahead[1], start[1] + chord[1] / 2 - note.sagM * ahead[0]] as const;
+  const radius = (length ** 2 / 4 + note.sagM ** 2) / (2 * note.sagM);
+  const centre = [middle[0] - radius * ahead[1], middle[1] + radius * ahead[0]] as const;
+  const bearing = (place: readonly [number, number]): number => Math.atan2(place[0] - centre[0], place[1] - centre[1]);
+  const full = 2 * (bearing(middle) - bearing(start));
+  const turn = bearing(start) + share * (full - 2 * Math.PI * Math.round(full / (2 * Math.PI)));
+  return [centre[0] + Math.abs(radius) * Math.sin(turn), centre[1] + Math.abs(radius) * Math.cos(turn)];
+}
+
 function noteFunctional(plan: FilterPlan, note: Note, axis: 0 | 1, isChained: boolean): Functional {
   const fixed = new Float64Array(6 + 2 * plan.fleetSize);
   const values = new Float64Array(plan.basis.count);
   const rates = new Float64Array(plan.basis.count);
   const modes = { east: new Float64Array(plan.basis.count), north: new Float64Array(plan.basis.count) };
   const chord = [note.endEastM - note.startEastM, note.endNorthM - note.startNorthM] as const;
-  const length = Math.sqrt(chord[0] ** 2 + chord[1] ** 2);
   fixed[axis] = 1;
   for (let point = 0; point < 5; point++) {
     const share = (1 + POINTS[point]!) / 2;
     const weight = WEIGHTS[point]! / 2;
-    const bulge = 4 * share * (1 - share) * note.sagM;
-    const eastM = note.startEastM + share * chord[0] + (bulge * chord[1]) / length;
-    const northM = note.startNorthM + share * chord[1] - (bulge * chord[0]) / length;
+    const [eastM, northM] = onArc(note, share);
     const beforeS = (1 - share) * note.durationS;
     const angle = plan.tidePerS * (note.endS - beforeS);
     fixed[2 + 2 * axis]! += weight * Math.cos(angle);
@@ -106,10 +118,11 @@ export function oracleCurrent(
   const rows = notes.flatMap((note) => ([0, 1] as const).map((axis) => ({
     functional: noteFunctional(plan, note, axis, note.chained && held.has(`${note.originIndex}/${note.number - 1 - note.skipped}`)),
     value: axis === 0 ? note.currentEastMps : note.currentNorthMps,
+    white: plan.noteSigmaMps ** 2 + (1e-5 * note.sagM) ** 2,
   })));
   const fixSigmaM = notes[0]!.fixSigmaM;
   const matrix = rows.map((a, i) => rows.map((b, j) =>
-    covariance(plan, a.functional, b.functional, fixSigmaM) + (i === j ? plan.noteSigmaMps ** 2 : 0)));
+    covariance(plan, a.functional, b.functional, fixSigmaM) + (i === j ? a.white : 0)));
   const modes = { east: new Float64Array(plan.basis.count), north: new Float64Array(plan.basis.count) };
   modesAt(plan.basis, at.eastM, at.northM, modes);
   const question = (axis: 0 | 1): Functional => {
