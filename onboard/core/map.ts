@@ -16,7 +16,7 @@ import {
   type Filter,
   type FilterPlan,
 } from './filter.ts';
-import { addNote, type NoteLog } from './note-log.ts';
+import { addNote, noteAt, type NoteLog } from './note-log.ts';
 import { transition } from './predict.ts';
 import { takeIn } from './take-note.ts';
 
@@ -91,7 +91,7 @@ export function workMap(map: CurrentMap): void {
   if (!counts.isBehind) return;
   const budget = Math.max(1, Math.floor(ENTRIES_PER_TICK / (plan.size * plan.size)));
   for (let done = 0; done < budget && working.clock.cursor < log.counts.total; done++) {
-    takeIn(plan, working, log.ordered[working.clock.cursor]!);
+    takeIn(plan, working, noteAt(log, working.clock.cursor));
     keepCheckpoint(map, working);
   }
   if (working.clock.cursor < log.counts.total) return;

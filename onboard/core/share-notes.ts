@@ -14,7 +14,7 @@ import { assert } from '../../messages/assert.ts';
 import {
   HAVES_PER_FRAME, NOTE_NUMBER_MAX, havesFirstOrigin, type Frame, type Note,
 } from '../../messages/frame.ts';
-import { heldUpTo, newestNumber, noteByNumber, type NoteLog } from './note-log.ts';
+import { heldUpTo, isHeld, newestNumber, noteByNumber, noteEndS, type NoteLog } from './note-log.ts';
 
 /** Says of a note are counted up to here; beyond it, all are alike. */
 const SAID_MAX = 255;
@@ -107,21 +107,25 @@ function lowestMark(sharing: NoteSharing, origin: number): number {
 
 /** The note to say in the coming slot, counted as said; null when no peer wants any that is held. */
 export function chooseNote(sharing: NoteSharing, log: NoteLog): Note | null {
-  let chosen: Note | null = null;
+  let chosenOrigin = -1;
+  let chosenNumber = 0;
   let chosenSaid = SAID_MAX + 1;
+  let chosenEndS = Infinity;
   for (let origin = 0; origin < sharing.fleetSize; origin++) {
     const newest = newestNumber(log, origin);
     for (let number = lowestMark(sharing, origin) + 1; number <= newest; number++) {
       const said = sharing.said[origin * NUMBERS + number]!;
-      if (said > chosenSaid) continue;
-      const note = noteByNumber(log, origin, number);
-      if (note === null) continue;
-      if (said < chosenSaid || (chosen !== null && note.endS < chosen.endS)) {
-        chosen = note;
-        chosenSaid = said;
-      }
+      if (said > chosenSaid || !isHeld(log, origin, number)) continue;
+      const endS = noteEndS(log, origin, number);
+      if (said === chosenSaid && endS >= chosenEndS) continue;
+      chosenOrigin = origin;
+      chosenNumber = number;
+      chosenSaid = said;
+      chosenEndS = endS;
     }
   }
+  if (chosenOrigin < 0) return null;
+  const chosen = noteByNumber(log, chosenOrigin, chosenNumber);
   if (chosen !== null) countSaid(sharing, chosen);
   return chosen;
 }
