@@ -13,8 +13,10 @@ import { startTrack, type Track } from './track.ts';
 const HOUR_S = 3600;
 /** Ticks between two renewals of the stated position spread; a fix renews it at once. */
 export const SPREAD_TICKS = 10;
-/** The box of the map reaches this many loop radii from its centre. */
+/** The box of the map reaches this many loop radii from its centre, or lengths of the map if more. */
 const BOX_RADII = 2;
+/** The few modes of the map resolve no less than this share of the loop's radius. */
+const LENGTH_RADII = 0.8;
 
 export interface EstimatorTick {
   readonly atS: number;
@@ -68,13 +70,14 @@ export interface Estimator {
 
 function planOf(mission: Mission): FilterPlan {
   const { onboard, loop, self } = mission;
+  const lengthM = Math.max(onboard.mapLength_m, LENGTH_RADII * loop.radius_m);
   const box = {
     centreEastM: loop.centre.east_m,
     centreNorthM: loop.centre.north_m,
-    halfM: BOX_RADII * loop.radius_m,
+    halfM: BOX_RADII * Math.max(loop.radius_m, lengthM),
   };
   return layOut({
-    basis: startBasis(box, onboard.mapLength_m, onboard.mapModes),
+    basis: startBasis(box, lengthM, onboard.mapModes),
     fleetSize: mission.fleet.length,
     tidePerS: (2 * Math.PI) / onboard.tidePeriod_s,
     uniformSigmaMps: onboard.uniformSigma_mps,

@@ -6,6 +6,7 @@
  * it with all else.
  */
 import type { Note } from '../../messages/frame.ts';
+import { chosen } from './bank.ts';
 import { SPREAD_TICKS, type Estimator, type EstimatorTick } from './estimator-state.ts';
 import { passesGate, takeFix } from './fixes.ts';
 import { currentWithSpread, meanCurrentAt, takeIntoMap, workMap, type CurrentAnswer } from './map.ts';
@@ -76,7 +77,8 @@ export interface BiasAnswer {
 }
 
 export function biasNow(estimator: Estimator, out: BiasAnswer): void {
-  const { plan, active } = estimator.map;
+  const { plan } = estimator.map;
+  const active = chosen(estimator.map.active);
   const bias = plan.biasAt + 2 * estimator.selfIndex;
   out.compassBiasRad = active.mean[bias]!;
   out.logScale = active.mean[bias + 1]!;

@@ -53,6 +53,8 @@ interface Scratch {
   readonly gainNorth: Float64Array;
   /** Innovation east, north; its variance east, covariance, variance north. */
   readonly innovation: Float64Array;
+  /** How well the last note fitted: see `take-note.ts`. */
+  readonly fit: Float64Array;
 }
 
 export interface Filter {
@@ -103,6 +105,7 @@ export function layOut(numbers: PlanNumbers): FilterPlan {
       gainEast: new Float64Array(size),
       gainNorth: new Float64Array(size),
       innovation: new Float64Array(5),
+      fit: new Float64Array(2),
     },
   };
 }

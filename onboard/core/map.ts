@@ -1,24 +1,17 @@
 /**
- * The current map: a filter over the notes in the log, always as if they had come in canonical order.
+ * The current map: a bank of filters over the notes in the log, always as if they had come in canonical order.
  *
- * A note that is the last in order is taken in at once. A late one rewinds a second filter to the
+ * A note that is the last in order is taken in at once. A late one rewinds a second bank to the
  * nearest checkpoint before it, which then works its way back through the log, a bounded number of
- * notes a tick; until it is through, the first filter answers. So the same notes give the same map to
+ * notes a tick; until it is through, the first bank answers. So the same notes give the same map to
  * the last bit, whatever order they came in, once nothing is pending.
  */
 import type { Note } from '../../messages/frame.ts';
+import { bankPlans, chosen, copyBank, resetBank, startBank, takeIntoBank, type Bank } from './bank.ts';
 import { modesAt } from './basis.ts';
-import {
-  TIDE_AT,
-  copyFilter,
-  resetFilter,
-  startFilter,
-  type Filter,
-  type FilterPlan,
-} from './filter.ts';
+import { TIDE_AT, type Filter, type FilterPlan } from './filter.ts';
 import { addNote, noteAt, type NoteLog } from './note-log.ts';
 import { transition } from './predict.ts';
-import { takeIn } from './take-note.ts';
 
 const CHECKPOINTS_MAX = 10;
 const CHECKPOINT_EVERY_S = 180;
@@ -26,15 +19,17 @@ const CHECKPOINT_EVERY_S = 180;
 const ENTRIES_PER_TICK = 60_000;
 
 export interface CurrentMap {
+  /** Layout of the state, alike for all members of the bank. */
   readonly plan: FilterPlan;
+  readonly plans: readonly FilterPlan[];
   readonly log: NoteLog;
   /** Answers all questions. */
-  readonly active: Filter;
+  readonly active: Bank;
   /** Works through late notes. */
-  readonly working: Filter;
+  readonly working: Bank;
   /** Earlier states of the canonical line, oldest first; the first `counts.checkpoints` are filled. */
-  readonly checkpoints: Filter[];
-  readonly counts: { checkpoints: number; isBehind: boolean };
+  readonly checkpoints: Bank[];
+  readonly counts: { checkpoints: number; isBehind: boolean; changes: number };
   readonly scratch: {
     readonly east: Float64Array;
     readonly north: Float64Array;
@@ -43,13 +38,15 @@ export interface CurrentMap {
 }
 
 export function startMap(plan: FilterPlan, log: NoteLog): CurrentMap {
+  const plans = bankPlans(plan);
   return {
     plan,
+    plans,
     log,
-    active: startFilter(plan),
-    working: startFilter(plan),
-    checkpoints: Array.from({ length: CHECKPOINTS_MAX }, () => startFilter(plan)),
-    counts: { checkpoints: 0, isBehind: false },
+    active: startBank(plans),
+    working: startBank(plans),
+    checkpoints: Array.from({ length: CHECKPOINTS_MAX }, () => startBank(plans)),
+    counts: { checkpoints: 0, isBehind: false, changes: 0 },
     scratch: {
       east: new Float64Array(plan.size),
       north: new Float64Array(plan.size),
@@ -65,47 +62,51 @@ export function takeIntoMap(map: CurrentMap, note: Note): boolean {
   if (place < 0) return false;
   const isLast = place === log.counts.total - 1;
   if (isLast && !counts.isBehind) {
-    takeIn(map.plan, active, note);
+    takeIntoBank(map.plans, active, note);
+    counts.changes += 1;
     keepCheckpoint(map, active);
     return true;
   }
   rewind(map, place);
-  if (isLast) takeIn(map.plan, active, note);
+  if (!isLast) return true;
+  takeIntoBank(map.plans, active, note);
+  counts.changes += 1;
   return true;
 }
 
-/** Sends the working filter back so that it will meet the note at `place`. */
+/** Sends the working bank back so that it will meet the note at `place`. */
 function rewind(map: CurrentMap, place: number): void {
   const { counts, working, checkpoints } = map;
-  while (counts.checkpoints > 0 && checkpoints[counts.checkpoints - 1]!.clock.cursor > place)
+  while (counts.checkpoints > 0 && checkpoints[counts.checkpoints - 1]!.members[0]!.clock.cursor > place)
     counts.checkpoints -= 1;
-  if (counts.isBehind && working.clock.cursor <= place) return;
+  if (counts.isBehind && working.members[0]!.clock.cursor <= place) return;
   counts.isBehind = true;
-  if (counts.checkpoints > 0) copyFilter(checkpoints[counts.checkpoints - 1]!, working);
-  else resetFilter(map.plan, working);
+  if (counts.checkpoints > 0) copyBank(checkpoints[counts.checkpoints - 1]!, working);
+  else resetBank(map.plans, working);
 }
 
 /** A bounded share of pending work. */
 export function workMap(map: CurrentMap): void {
-  const { counts, working, log, plan } = map;
+  const { counts, working, log, plan, plans } = map;
   if (!counts.isBehind) return;
-  const budget = Math.max(1, Math.floor(ENTRIES_PER_TICK / (plan.size * plan.size)));
-  for (let done = 0; done < budget && working.clock.cursor < log.counts.total; done++) {
-    takeIn(plan, working, noteAt(log, working.clock.cursor));
+  const budget = Math.max(1, Math.floor(ENTRIES_PER_TICK / (plans.length * plan.size * plan.size)));
+  for (let done = 0; done < budget && working.members[0]!.clock.cursor < log.counts.total; done++) {
+    takeIntoBank(plans, working, noteAt(log, working.members[0]!.clock.cursor));
     keepCheckpoint(map, working);
   }
-  if (working.clock.cursor < log.counts.total) return;
-  copyFilter(working, map.active);
+  if (working.members[0]!.clock.cursor < log.counts.total) return;
+  copyBank(working, map.active);
+  counts.changes += 1;
   counts.isBehind = false;
 }
 
 /** Keeps a state of the canonical line, if the last one kept is old enough; thins older ones out. */
-function keepCheckpoint(map: CurrentMap, line: Filter): void {
+function keepCheckpoint(map: CurrentMap, line: Bank): void {
   const { counts, checkpoints } = map;
   const last = counts.checkpoints === 0 ? null : checkpoints[counts.checkpoints - 1]!;
-  if (last !== null && line.clock.atS - last.clock.atS < CHECKPOINT_EVERY_S) return;
-  if (counts.checkpoints === CHECKPOINTS_MAX) dropOne(map, line.clock.atS);
-  copyFilter(line, checkpoints[counts.checkpoints]!);
+  if (last !== null && line.members[0]!.clock.atS - last.members[0]!.clock.atS < CHECKPOINT_EVERY_S) return;
+  if (counts.checkpoints === CHECKPOINTS_MAX) dropOne(map, line.members[0]!.clock.atS);
+  copyBank(line, checkpoints[counts.checkpoints]!);
   counts.checkpoints += 1;
 }
 
@@ -116,8 +117,8 @@ function dropOne(map: CurrentMap, nowS: number): void {
   let least = Infinity;
   for (let index = 0; index < counts.checkpoints - 1; index++) {
     const beforeS =
-      index === 0 ? checkpoints[0]!.clock.atS - CHECKPOINT_EVERY_S : checkpoints[index - 1]!.clock.atS;
-    const afterS = checkpoints[index + 1]!.clock.atS;
+      index === 0 ? checkpoints[0]!.members[0]!.clock.atS - CHECKPOINT_EVERY_S : checkpoints[index - 1]!.members[0]!.clock.atS;
+    const afterS = checkpoints[index + 1]!.members[0]!.clock.atS;
     const widened = (afterS - beforeS) / (nowS - beforeS);
     if (widened < least) {
       least = widened;
@@ -140,13 +141,19 @@ export interface CurrentAnswer {
   varNorthM2ps2: number;
 }
 
+/** The plan of the filter that answers. */
+export function planNow(map: CurrentMap): FilterPlan {
+  return map.plans[map.active.choice.member]!;
+}
+
 /** The mean current at any place and time, written to `out` as east, north. */
 export function meanCurrentAt(
   map: CurrentMap,
   at: { eastM: number; northM: number; atS: number },
   out: Float64Array,
 ): void {
-  const { plan, active } = map;
+  const plan = planNow(map);
+  const active = chosen(map.active);
   const { mean } = active;
   const { modes } = plan.scratch;
   const f = transition(plan.modePerS, at.atS - filterTimeS(active, at.atS));
@@ -175,7 +182,9 @@ export function currentWithSpread(
   at: { eastM: number; northM: number; atS: number },
   out: CurrentAnswer,
 ): void {
-  const { plan, active, scratch } = map;
+  const { scratch } = map;
+  const plan = planNow(map);
+  const active = chosen(map.active);
   const { modes } = plan.scratch;
   const { count } = plan.basis;
   meanCurrentAt(map, at, scratch.gain);

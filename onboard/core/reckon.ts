@@ -7,9 +7,10 @@
  * each mode of the map, ∫ φ dt and ∫ φ (t − t0) dt, so that later knowledge of the current corrects
  * the position too. Nothing here grows: a leg is a handful of sums.
  */
+import { chosen } from './bank.ts';
 import { modesAt } from './basis.ts';
 import { TIDE_AT, type FilterPlan } from './filter.ts';
-import { dot, filterTimeS, timesCovariance, type CurrentMap } from './map.ts';
+import { dot, filterTimeS, planNow, timesCovariance, type CurrentMap } from './map.ts';
 import { transition } from './predict.ts';
 
 /** Sums since a moment t0. */
@@ -105,14 +106,15 @@ export interface PositionRows {
 
 /** Whether the anchor's error is the fix error that the filter keeps for this vehicle. */
 export function isInFilter(map: CurrentMap, anchor: Anchor, selfIndex: number): boolean {
-  return anchor.noteNumber > 0 && map.active.lastNumber[selfIndex] === anchor.noteNumber;
+  return anchor.noteNumber > 0 && chosen(map.active).lastNumber[selfIndex] === anchor.noteNumber;
 }
 
 /** Writes the rows; what they do not cover is `anchor + water`. */
 export function writePositionRows(
   map: CurrentMap, of: { leg: Leg; anchor: Anchor; selfIndex: number }, rows: PositionRows,
 ): void {
-  const { plan, active } = map;
+  const plan = planNow(map);
+  const active = chosen(map.active);
   const { leg, anchor, selfIndex } = of;
   const { east, north } = rows;
   east.fill(0);
@@ -155,7 +157,7 @@ export interface PositionAnswer {
 export function meanPosition(
   map: CurrentMap, of: { leg: Leg; anchor: Anchor }, rows: PositionRows, out: PositionAnswer,
 ): void {
-  const { mean } = map.active;
+  const { mean } = chosen(map.active);
   let eastM = of.anchor.eastM + of.leg.waterEastM + of.leg.carriedEastM;
   let northM = of.anchor.northM + of.leg.waterNorthM + of.leg.carriedNorthM;
   for (let at = 0; at < mean.length; at++) {
@@ -174,9 +176,9 @@ export function positionSpread(
   const own = isInFilter(map, of.anchor, of.selfIndex) ? 0 : of.anchor.sigmaM ** 2;
   const extra = own + of.whiteM2;
   const { gain } = map.scratch;
-  timesCovariance(map.active, size, { row: rows.east, extent: size }, gain);
+  timesCovariance(chosen(map.active), size, { row: rows.east, extent: size }, gain);
   out.varEastM2 = dot(rows.east, gain, size) + extra;
   out.covEastNorthM2 = dot(rows.north, gain, size);
-  timesCovariance(map.active, size, { row: rows.north, extent: size }, gain);
+  timesCovariance(chosen(map.active), size, { row: rows.north, extent: size }, gain);
   out.varNorthM2 = dot(rows.north, gain, size) + extra;
 }

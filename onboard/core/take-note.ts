@@ -19,6 +19,10 @@ import { PATH_POINTS, PATH_SHARES, PATH_WEIGHTS, writePath } from './note-path.t
 import { predict } from './predict.ts';
 import { absorb, compare } from './update.ts';
 
+/** Places in `fit`: the normalised innovation squared of the last note, log determinant of its spread. */
+export const DISTANCE2 = 0;
+export const LOG_SPREAD = 1;
+
 /** A long path is an arc only roughly: a tenth of its sag, in a current that changes by 10⁻⁴ per second. */
 const PATH_DOUBT_PER_S = 1e-5;
 /** A note's normalised misfit is 2 on average; what exceeds this adds up. */
@@ -61,7 +65,7 @@ function writePathRows(plan: FilterPlan, note: Note): void {
 /** Takes in one note whose end is not before the filter's time. */
 export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
   const { size, newFixAt } = plan;
-  const { rowEast, rowNorth } = plan.scratch;
+  const { rowEast, rowNorth, innovation, fit } = plan.scratch;
   predict(plan, filter, Math.max(note.endS, filter.clock.atS));
   const origin = note.originIndex;
   const fix = plan.fixAt + 2 * origin;
@@ -89,7 +93,10 @@ export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
     north: note.currentNorthMps - plan.given.north,
     variance: plan.noteSigmaMps ** 2 + (PATH_DOUBT_PER_S * note.sagM) ** 2,
   };
-  if (isSurprising(plan, filter, origin, compare(plan, filter, pair))) {
+  const distance2 = compare(plan, filter, pair);
+  fit[DISTANCE2] = distance2;
+  fit[LOG_SPREAD] = Math.log(innovation[2]! * innovation[4]! - innovation[3]! * innovation[3]!);
+  if (isSurprising(plan, filter, origin, distance2)) {
     openUp(plan, filter, origin);
     compare(plan, filter, pair);
   }
