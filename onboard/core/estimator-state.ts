@@ -7,12 +7,12 @@ import { startBasis } from './basis.ts';
 import { layOut, type FilterPlan } from './filter.ts';
 import { startMap, type CurrentMap } from './map.ts';
 import { startNoteLog, type NoteLog } from './note-log.ts';
-import { startLeg, type Anchor, type Leg, type PositionAnswer, type PositionRows } from './reckon.ts';
+import { startDrift, startLeg, type Anchor, type Drift, type Leg, type PositionAnswer, type PositionRows } from './reckon.ts';
 import { startTrack, type Track } from './track.ts';
 
 const HOUR_S = 3600;
 /** Ticks between two renewals of the stated position spread; a fix renews it at once. */
-export const SPREAD_TICKS = 10;
+export const SPREAD_TICKS = 20;
 /** The box of the map reaches this many loop radii from its centre, or lengths of the map if more. */
 const BOX_RADII = 2;
 /** The few modes of the map resolve no less than this share of the loop's radius. */
@@ -40,6 +40,8 @@ export interface Memory {
   lastEastMps: number;
   lastNorthMps: number;
   sinceSpread: number;
+  /** Changes of the map that the drift has seen. */
+  changesSeen: number;
   /** Fixes in a row that failed the gate, and how far off the last of them was. */
   refused: number;
   refusedEastM: number;
@@ -64,8 +66,9 @@ export interface Estimator {
   readonly track: Track;
   readonly position: PositionAnswer;
   readonly memory: Memory;
+  readonly drift: Drift;
   /** Scratch: a current. */
-  readonly drift: Float64Array;
+  readonly current: Float64Array;
 }
 
 function planOf(mission: Mission): FilterPlan {
@@ -107,7 +110,8 @@ export function startEstimator(mission: Mission): Estimator {
     anchor: { eastM: start.east_m, northM: start.north_m, sigmaM, noteNumber: 0, isFix: false },
     rows: { east: new Float64Array(plan.size), north: new Float64Array(plan.size) },
     track: startTrack(),
-    drift: new Float64Array(2),
+    drift: startDrift(plan.basis.count),
+    current: new Float64Array(2),
     position: {
       eastM: start.east_m,
       northM: start.north_m,
@@ -121,6 +125,7 @@ export function startEstimator(mission: Mission): Estimator {
       lastEastMps: 0,
       lastNorthMps: 0,
       sinceSpread: SPREAD_TICKS,
+      changesSeen: -1,
       refused: 0,
       refusedEastM: 0,
       refusedNorthM: 0,

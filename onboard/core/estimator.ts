@@ -13,7 +13,9 @@ import { currentWithSpread, meanCurrentAt, takeIntoMap, workMap, type CurrentAns
 import {
   addWay,
   meanPosition,
+  movePosition,
   positionSpread,
+  renewDrift,
   resetLeg,
   writePositionRows,
   type PositionAnswer,
@@ -30,12 +32,14 @@ const GUESS_SIGMA_M = 60;
 
 /** Moves dead reckoning to this tick and takes in its fix; answers the own note that the fix issued. */
 export function reckonTick(estimator: Estimator, tick: EstimatorTick): Note | null {
+  const { memory, map } = estimator;
   moveOn(estimator, tick);
-  renewPosition(estimator);
+  memory.sinceSpread += 1;
+  if (memory.changesSeen !== map.counts.changes || memory.sinceSpread >= SPREAD_TICKS) renewPosition(estimator);
   if (tick.fix === null) return null;
   if (!passesGate(estimator, tick.fix)) return null;
   const note = takeFix(estimator, tick.fix, tick.unrounded);
-  estimator.memory.sinceSpread = SPREAD_TICKS;
+  memory.sinceSpread = SPREAD_TICKS;
   renewPosition(estimator);
   return note;
 }
@@ -124,7 +128,7 @@ export function guessPosition(estimator: Estimator, eastM: number, northM: numbe
 }
 
 function moveOn(estimator: Estimator, tick: EstimatorTick): void {
-  const { memory, leg, map, track, position } = estimator;
+  const { memory, leg, map, track, position, drift, selfIndex } = estimator;
   const eastMps = tick.speedMps * Math.sin(tick.headingRad);
   const northMps = tick.speedMps * Math.cos(tick.headingRad);
   if (memory.hasTicked && tick.atS - memory.lastAtS > GAP_TICKS * estimator.mission.tick_s)
@@ -143,6 +147,7 @@ function moveOn(estimator: Estimator, tick: EstimatorTick): void {
     };
     addWay(map.plan, leg, way);
     addTrack(track, way);
+    if (memory.changesSeen === map.counts.changes) movePosition(map, { leg, way, drift, selfIndex }, position);
   } else {
     resetLeg(leg, tick.atS);
     memory.hasTicked = true;
@@ -170,11 +175,13 @@ function bridgeGap(estimator: Estimator, atS: number): void {
   memory.hasIssued = false;
 }
 
+/** The position anew from anchor, leg and map; its spread too, if that is due. */
 function renewPosition(estimator: Estimator): void {
-  const { map, leg, anchor, rows, position, memory, selfIndex } = estimator;
+  const { map, leg, anchor, rows, position, memory, drift, selfIndex } = estimator;
   writePositionRows(map, { leg, anchor, selfIndex }, rows);
   meanPosition(map, { leg, anchor }, rows, position);
-  memory.sinceSpread += 1;
+  renewDrift(map, leg, drift);
+  memory.changesSeen = map.counts.changes;
   if (memory.sinceSpread < SPREAD_TICKS) return;
   memory.sinceSpread = 0;
   positionSpread(map, { anchor, selfIndex, whiteM2: memory.whitePerS * leg.seconds }, rows, position);

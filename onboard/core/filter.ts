@@ -44,6 +44,8 @@ export interface FilterPlan {
 /** Working memory of one filter step; holds nothing between calls. */
 interface Scratch {
   readonly modes: { readonly east: Float64Array; readonly north: Float64Array };
+  /** cos and sin of the tide's angle. */
+  readonly tide: Float64Array;
   /** Points of a note's path. */
   readonly path: Float64Array;
   readonly rowEast: Float64Array;
@@ -99,6 +101,7 @@ export function layOut(numbers: PlanNumbers): FilterPlan {
     given: { east: 0, north: 0 },
     scratch: {
       modes: { east: new Float64Array(count), north: new Float64Array(count) },
+      tide: new Float64Array(2),
       path: new Float64Array(2 * PATH_POINTS),
       rowEast: new Float64Array(size),
       rowNorth: new Float64Array(size),

@@ -8,7 +8,7 @@ import { NOTE_NUMBER_MAX, NOTE_SKIPPED_MAX, roundedNote, type Note } from '../..
 import type { Estimator, EstimatorTick, Memory } from './estimator-state.ts';
 import { meanCurrentAt, takeIntoMap } from './map.ts';
 import { newestNumber } from './note-log.ts';
-import { addWay, positionSpread, resetLeg, type Anchor } from './reckon.ts';
+import { addWay, positionSpread, resetLeg, writePositionRows, type Anchor } from './reckon.ts';
 import { midTrack, tailWay, trackCount, wayBack, type Track } from './track.ts';
 
 /** Fixes in a row that fail the gate before the gate is held to be wrong, whatever they say. */
@@ -22,12 +22,13 @@ type EstimatorFix = NonNullable<EstimatorTick['fix']>;
 
 /** Whether a fix is near enough to where the vehicle thinks it was; or the gate is held to be wrong. */
 export function passesGate(estimator: Estimator, fix: EstimatorFix): boolean {
-  const { memory, position, rows, map, leg, anchor, selfIndex, track, drift } = estimator;
+  const { memory, position, rows, map, leg, anchor, selfIndex, track, current } = estimator;
+  writePositionRows(map, { leg, anchor, selfIndex }, rows);
   positionSpread(map, { anchor, selfIndex, whiteM2: memory.whitePerS * leg.seconds }, rows, position);
   const then = tailWay(track, fix.atS);
-  meanCurrentAt(map, { eastM: position.eastM, northM: position.northM, atS: fix.atS }, drift);
-  const east = fix.eastM - (position.eastM - then.waterEastM - drift[0]! * then.seconds);
-  const north = fix.northM - (position.northM - then.waterNorthM - drift[1]! * then.seconds);
+  meanCurrentAt(map, { eastM: position.eastM, northM: position.northM, atS: fix.atS }, current);
+  const east = fix.eastM - (position.eastM - then.waterEastM - current[0]! * then.seconds);
+  const north = fix.northM - (position.northM - then.waterNorthM - current[1]! * then.seconds);
   const varEast = position.varEastM2 + fix.sigmaM ** 2;
   const varNorth = position.varNorthM2 + fix.sigmaM ** 2;
   const cross = position.covEastNorthM2;

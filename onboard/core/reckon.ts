@@ -77,15 +77,17 @@ export interface Way {
 }
 
 export function addWay(plan: FilterPlan, leg: Leg, way: Way): void {
-  const { modes } = plan.scratch;
+  const { modes, tide } = plan.scratch;
   leg.seconds += way.seconds;
   leg.waterEastM += way.waterEastM;
   leg.waterNorthM += way.waterNorthM;
   leg.carriedEastM += way.carriedEastM;
   leg.carriedNorthM += way.carriedNorthM;
   const angle = plan.tidePerS * way.midS;
-  leg.tideCosS += way.seconds * Math.cos(angle);
-  leg.tideSinS += way.seconds * Math.sin(angle);
+  tide[0] = Math.cos(angle);
+  tide[1] = Math.sin(angle);
+  leg.tideCosS += way.seconds * tide[0];
+  leg.tideSinS += way.seconds * tide[1];
   modesAt(plan.basis, way.eastM, way.northM, modes);
   const sinceS = way.midS - leg.startS;
   for (let mode = 0; mode < plan.basis.count; mode++) {
@@ -96,6 +98,54 @@ export function addWay(plan: FilterPlan, leg: Leg, way: Way): void {
     leg.eastS2[mode]! += east * sinceS;
     leg.northS2[mode]! += north * sinceS;
   }
+}
+
+/** Each mode's mean at the start of the leg, and its change per second: what a tick's way needs of the map. */
+export interface Drift {
+  readonly value: Float64Array;
+  readonly rate: Float64Array;
+}
+
+export function startDrift(modes: number): Drift {
+  return { value: new Float64Array(modes), rate: new Float64Array(modes) };
+}
+
+/** Renews the drift after a change of map or leg. */
+export function renewDrift(map: CurrentMap, leg: Leg, drift: Drift): void {
+  const plan = planNow(map);
+  const filter = chosen(map.active);
+  const f = transition(plan.modePerS, leg.startS - filterTimeS(filter, leg.startS));
+  for (let mode = 0; mode < plan.basis.count; mode++) {
+    const value = filter.mean[plan.valueAt + mode]!;
+    const rate = filter.mean[plan.rateAt + mode]!;
+    drift.value[mode] = f.valueOfValue * value + f.valueOfRate * rate;
+    drift.rate[mode] = f.rateOfValue * value + f.rateOfRate * rate;
+  }
+}
+
+/** Moves the mean position on by the way that `addWay` has just added: the same sums, one tick more. */
+export function movePosition(
+  map: CurrentMap,
+  of: { leg: Leg; way: Way; drift: Drift; selfIndex: number },
+  out: PositionAnswer,
+): void {
+  const { plan } = map;
+  const { leg, way, drift, selfIndex } = of;
+  const { mean } = chosen(map.active);
+  const { modes, tide } = plan.scratch;
+  const sinceS = way.midS - leg.startS;
+  const beta = mean[plan.biasAt + 2 * selfIndex]!;
+  const scale = mean[plan.biasAt + 2 * selfIndex + 1]!;
+  let east = mean[0]! + tide[0]! * mean[TIDE_AT]! + tide[1]! * mean[TIDE_AT + 1]!;
+  let north = mean[1]! + tide[0]! * mean[TIDE_AT + 2]! + tide[1]! * mean[TIDE_AT + 3]!;
+  for (let mode = 0; mode < plan.basis.count; mode++) {
+    const value = drift.value[mode]! + sinceS * drift.rate[mode]!;
+    east += value * modes.east[mode]!;
+    north += value * modes.north[mode]!;
+  }
+  const { waterEastM, waterNorthM, seconds } = way;
+  out.eastM += waterEastM + way.carriedEastM + seconds * east - beta * waterNorthM - scale * waterEastM;
+  out.northM += waterNorthM + way.carriedNorthM + seconds * north + beta * waterEastM - scale * waterNorthM;
 }
 
 /** Rows of the position in the state vector; caller-owned. */

@@ -28,23 +28,22 @@ export function startTrack(): Track {
 
 export function addTrack(track: Track, way: Way): void {
   const { ways, places, counts } = track;
-  ways.set(
-    [
-      way.midS,
-      way.seconds,
-      way.waterEastM,
-      way.waterNorthM,
-      way.eastM,
-      way.northM,
-      way.carriedEastM,
-      way.carriedNorthM,
-    ],
-    (counts.ways % WAYS) * FIELDS,
-  );
+  const at = (counts.ways % WAYS) * FIELDS;
+  ways[at] = way.midS;
+  ways[at + 1] = way.seconds;
+  ways[at + 2] = way.waterEastM;
+  ways[at + 3] = way.waterNorthM;
+  ways[at + 4] = way.eastM;
+  ways[at + 5] = way.northM;
+  ways[at + 6] = way.carriedEastM;
+  ways[at + 7] = way.carriedNorthM;
   counts.ways += 1;
   const lastS = counts.places === 0 ? -Infinity : places[((counts.places - 1) % PLACES) * 3]!;
   if (way.midS - lastS < PLACE_EVERY_S) return;
-  places.set([way.midS, way.eastM, way.northM], (counts.places % PLACES) * 3);
+  const place = (counts.places % PLACES) * 3;
+  places[place] = way.midS;
+  places[place + 1] = way.eastM;
+  places[place + 2] = way.northM;
   counts.places += 1;
 }
 
