@@ -8,6 +8,7 @@
  * that keeps time does not wait.
  */
 import { readMessage, writeMessage } from '../messages/codec.ts';
+import { fitsSense } from '../messages/fits.ts';
 import { CHECKPOINT_S } from '../messages/memory.ts';
 import { missionSchema, type Mission } from '../messages/mission.ts';
 import { normalise } from '../messages/normalise.ts';
@@ -72,7 +73,7 @@ function isOfFleet(mission: Mission): boolean {
 
 /** The steer for a sense's bytes, or null if they are refused. */
 export function takeSense(answering: Answering, bytes: Uint8Array): Uint8Array | null {
-  const reading = readMessage(senseSchema, bytes);
+  const reading = readMessage(senseSchema, bytes, fitsSense);
   if (!reading.ok || answering.state === null) return refuse(answering);
   const sense = reading.value;
   if (answering.lastTick >= 0) {

@@ -6,6 +6,7 @@
 import { readMessage, writeMessage } from '../../messages/codec.ts';
 import { normalise } from '../../messages/normalise.ts';
 import type { Sense } from '../../messages/sense.ts';
+import { fitsSteer } from '../../messages/fits.ts';
 import { steerSchema, type Steer } from '../../messages/steer.ts';
 import { everyVehicle, readTopic, vehicleTopic } from '../../messages/topics.ts';
 import type { InterruptibleAgents } from '../run/paced.ts';
@@ -133,7 +134,7 @@ function take(lockstep: Lockstep, topic: string, bytes: Uint8Array): SteerRefusa
   const reading = readTopic(topic);
   const index = reading?.of === 'vehicle' ? vehicles.indexOf(reading.vehicle) : -1;
   if (index < 0) return 'foreign';
-  const message = readMessage(steerSchema, bytes);
+  const message = readMessage(steerSchema, bytes, fitsSteer);
   if (!message.ok) return 'garbled';
   const steer = message.value;
   if (waiting === null) return steer.tick === lockstep.lastTick ? 'repeated' : 'another tick';
