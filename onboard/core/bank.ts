@@ -8,7 +8,7 @@
  */
 import { copyFilter, resetFilter, startFilter, type Filter, type FilterPlan } from './filter.ts';
 import type { Note } from '../../messages/frame.ts';
-import { DISTANCE2, LOG_SPREAD, takeIn } from './take-note.ts';
+import { DISTANCE2, LOG_SPREAD, takeIn, writeNoteRows } from './take-note.ts';
 
 /** Per member: decorrelation time and prior sd of the map's modes, over those of the settings. */
 const MEMBERS = [
@@ -64,6 +64,7 @@ export function takeIntoBank(plans: readonly FilterPlan[], bank: Bank, note: Not
   const { members, scores, choice } = bank;
   const fade = Math.exp(-Math.max(0, note.endS - members[0]!.clock.atS) / FADE_S);
   let best = 0;
+  writeNoteRows(plans[0]!, note);
   for (let index = 0; index < plans.length; index++) {
     const plan = plans[index]!;
     takeIn(plan, members[index]!, note);

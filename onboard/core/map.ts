@@ -214,35 +214,42 @@ export function currentWithSpread(
   }
   const fresh = f.newVariance * plan.modeSigmaMps ** 2;
   const { gain } = scratch;
-  const extent = plan.biasAt;
-  timesCovariance(active, plan.size, { row: east, extent }, gain);
-  out.varEastM2ps2 = dot(east, gain, extent) + fresh * newEast;
-  out.covEastNorthM2ps2 = dot(north, gain, extent) + fresh * newCross;
-  timesCovariance(active, plan.size, { row: north, extent }, gain);
-  out.varNorthM2ps2 = dot(north, gain, extent) + fresh * newNorth;
+  spreadOf(active, plan.size, { east, north, extent: plan.biasAt }, gain);
+  out.varEastM2ps2 = gain[0]! + fresh * newEast;
+  out.covEastNorthM2ps2 = gain[1]! + fresh * newCross;
+  out.varNorthM2ps2 = gain[2]! + fresh * newNorth;
 }
 
-/** P row over the first `extent` states, written to `out`. */
-export function timesCovariance(
+/** Variance east, covariance, variance north of two rows over the first `extent` states, to `out`. */
+export function spreadOf(
   filter: Filter,
   size: number,
-  of: { row: Float64Array; extent: number },
+  of: { readonly east: Float64Array; readonly north: Float64Array; readonly extent: number },
   out: Float64Array,
 ): void {
-  const { row, extent } = of;
+  const { east, north, extent } = of;
   const { covariance } = filter;
-  for (let at = 0; at < extent; at++) out[at] = 0;
-  for (let from = 0; from < extent; from++) {
-    const weight = row[from]!;
-    if (weight === 0) continue;
-    const start = from * size;
-    for (let at = 0; at < extent; at++) out[at]! += weight * covariance[start + at]!;
+  let varEast = 0;
+  let cross = 0;
+  let varNorth = 0;
+  for (let row = 0; row < extent; row++) {
+    const e = east[row]!;
+    const n = north[row]!;
+    if (e === 0 && n === 0) continue;
+    const start = row * size;
+    let sumEast = 0;
+    let sumNorth = 0;
+    for (let at = 0; at < row; at++) {
+      const entry = covariance[start + at]!;
+      sumEast += entry * east[at]!;
+      sumNorth += entry * north[at]!;
+    }
+    const own = covariance[start + row]!;
+    varEast += e * (2 * sumEast + own * e);
+    cross += e * sumNorth + n * sumEast + own * e * n;
+    varNorth += n * (2 * sumNorth + own * n);
   }
-}
-
-/** The inner product over the first `extent` states. */
-export function dot(a: Float64Array, b: Float64Array, extent: number): number {
-  let sum = 0;
-  for (let at = 0; at < extent; at++) sum += a[at]! * b[at]!;
-  return sum;
+  out[0] = varEast;
+  out[1] = cross;
+  out[2] = varNorth;
 }

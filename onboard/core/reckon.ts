@@ -10,7 +10,7 @@
 import { chosen } from './bank.ts';
 import { modesAt } from './basis.ts';
 import { TIDE_AT, type FilterPlan } from './filter.ts';
-import { dot, filterTimeS, planNow, timesCovariance, type CurrentMap } from './map.ts';
+import { filterTimeS, planNow, spreadOf, type CurrentMap } from './map.ts';
 import { transition } from './predict.ts';
 
 /** Sums since a moment t0. */
@@ -226,9 +226,8 @@ export function positionSpread(
   const own = isInFilter(map, of.anchor, of.selfIndex) ? 0 : of.anchor.sigmaM ** 2;
   const extra = own + of.whiteM2;
   const { gain } = map.scratch;
-  timesCovariance(chosen(map.active), size, { row: rows.east, extent: size }, gain);
-  out.varEastM2 = dot(rows.east, gain, size) + extra;
-  out.covEastNorthM2 = dot(rows.north, gain, size);
-  timesCovariance(chosen(map.active), size, { row: rows.north, extent: size }, gain);
-  out.varNorthM2 = dot(rows.north, gain, size) + extra;
+  spreadOf(chosen(map.active), size, { ...rows, extent: size }, gain);
+  out.varEastM2 = gain[0]! + extra;
+  out.covEastNorthM2 = gain[1]!;
+  out.varNorthM2 = gain[2]! + extra;
 }

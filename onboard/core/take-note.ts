@@ -62,21 +62,12 @@ function writePathRows(plan: FilterPlan, note: Note): void {
   rowNorth[TIDE_AT + 3] = rowEast[TIDE_AT + 1]!;
 }
 
-/** Takes in one note whose end is not before the filter's time. */
-export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
-  const { size, newFixAt } = plan;
-  const { rowEast, rowNorth, innovation, fit } = plan.scratch;
-  predict(plan, filter, Math.max(note.endS, filter.clock.atS));
-  const origin = note.originIndex;
-  const fix = plan.fixAt + 2 * origin;
-  const bias = plan.biasAt + 2 * origin;
-  const isChained = note.chained && filter.lastNumber[origin] === note.number - 1 - note.skipped;
-  if (!isChained) {
-    renewState(filter, size, fix, note.fixSigmaM);
-    renewState(filter, size, fix + 1, note.fixSigmaM);
-  }
-  renewState(filter, size, newFixAt, note.fixSigmaM);
-  renewState(filter, size, newFixAt + 1, note.fixSigmaM);
+/** Writes the rows of a note's two components, for the state at its end: the same for every member. */
+export function writeNoteRows(plan: FilterPlan, note: Note): void {
+  const { rowEast, rowNorth } = plan.scratch;
+  const { newFixAt } = plan;
+  const fix = plan.fixAt + 2 * note.originIndex;
+  const bias = plan.biasAt + 2 * note.originIndex;
   writePathRows(plan, note);
   const waterEast = (note.endEastM - note.startEastM) / note.durationS - note.currentEastMps;
   const waterNorth = (note.endNorthM - note.startNorthM) / note.durationS - note.currentNorthMps;
@@ -88,6 +79,22 @@ export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
   rowNorth[fix + 1] = -1 / note.durationS;
   rowEast[newFixAt] = 1 / note.durationS;
   rowNorth[newFixAt + 1] = 1 / note.durationS;
+}
+
+/** Takes in a note whose rows are written and whose end is not before the filter's time. */
+export function takeIn(plan: FilterPlan, filter: Filter, note: Note): void {
+  const { size, newFixAt } = plan;
+  const { innovation, fit } = plan.scratch;
+  predict(plan, filter, Math.max(note.endS, filter.clock.atS));
+  const origin = note.originIndex;
+  const fix = plan.fixAt + 2 * origin;
+  const isChained = note.chained && filter.lastNumber[origin] === note.number - 1 - note.skipped;
+  if (!isChained) {
+    renewState(filter, size, fix, note.fixSigmaM);
+    renewState(filter, size, fix + 1, note.fixSigmaM);
+  }
+  renewState(filter, size, newFixAt, note.fixSigmaM);
+  renewState(filter, size, newFixAt + 1, note.fixSigmaM);
   const pair = {
     east: note.currentEastMps - plan.given.east,
     north: note.currentNorthMps - plan.given.north,

@@ -18,39 +18,50 @@ export interface Pair {
 /** Compares a pair with what the rows in `plan.scratch` expect of it; answers νᵀ S⁻¹ ν. */
 export function compare(plan: FilterPlan, filter: Filter, pair: Pair): number {
   const { rowEast, rowNorth, gainEast, gainNorth, innovation } = plan.scratch;
-  innovation[0] = pair.east - timesRow(plan.size, filter, rowEast, gainEast);
-  innovation[1] = pair.north - timesRow(plan.size, filter, rowNorth, gainNorth);
+  timesRows(plan, filter);
+  const { mean } = filter;
+  let east = pair.east;
+  let north = pair.north;
   let varEast = pair.variance;
   let cross = 0;
   let varNorth = pair.variance;
   for (let at = 0; at < plan.size; at++) {
-    varEast += rowEast[at]! * gainEast[at]!;
-    cross += rowNorth[at]! * gainEast[at]!;
-    varNorth += rowNorth[at]! * gainNorth[at]!;
+    const weightEast = rowEast[at]!;
+    const weightNorth = rowNorth[at]!;
+    east -= weightEast * mean[at]!;
+    north -= weightNorth * mean[at]!;
+    varEast += weightEast * gainEast[at]!;
+    cross += weightNorth * gainEast[at]!;
+    varNorth += weightNorth * gainNorth[at]!;
   }
+  innovation[0] = east;
+  innovation[1] = north;
   innovation[2] = varEast;
   innovation[3] = cross;
   innovation[4] = varNorth;
   const determinant = varEast * varNorth - cross * cross;
   assert(varEast > 0 && determinant > 0, 'an innovation has a spread');
-  const east = innovation[0]!;
-  const north = innovation[1]!;
   return (varNorth * east * east - 2 * cross * east * north + varEast * north * north) / determinant;
 }
 
-/** Writes P rowᵀ to `gain` and answers row · x. */
-function timesRow(size: number, filter: Filter, row: Float64Array, gain: Float64Array): number {
-  const { mean, covariance } = filter;
-  gain.fill(0);
-  let expected = 0;
+/** Writes P rowᵀ of both rows, in one passage through P. */
+function timesRows(plan: FilterPlan, filter: Filter): void {
+  const { rowEast, rowNorth, gainEast, gainNorth } = plan.scratch;
+  const { covariance } = filter;
+  const { size } = plan;
+  gainEast.fill(0);
+  gainNorth.fill(0);
   for (let at = 0; at < size; at++) {
-    const weight = row[at]!;
-    if (weight === 0) continue;
-    expected += weight * mean[at]!;
+    const weightEast = rowEast[at]!;
+    const weightNorth = rowNorth[at]!;
+    if (weightEast === 0 && weightNorth === 0) continue;
     const start = at * size;
-    for (let other = 0; other < size; other++) gain[other]! += weight * covariance[start + other]!;
+    for (let other = 0; other < size; other++) {
+      const entry = covariance[start + other]!;
+      gainEast[other]! += weightEast * entry;
+      gainNorth[other]! += weightNorth * entry;
+    }
   }
-  return expected;
 }
 
 /** Takes in the pair that was last compared. */

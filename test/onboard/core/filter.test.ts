@@ -4,11 +4,17 @@
  */
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
+import type { Note } from '../../../messages/frame.ts';
 import { startFilter, type Filter, type FilterPlan } from '../../../onboard/core/filter.ts';
 import { predict, transition } from '../../../onboard/core/predict.ts';
-import { takeIn } from '../../../onboard/core/take-note.ts';
+import { takeIn, writeNoteRows } from '../../../onboard/core/take-note.ts';
 import { absorb, compare } from '../../../onboard/core/update.ts';
 import { planFor, someNotes } from '../../support/estimating.ts';
+
+function take(plan: FilterPlan, filter: Filter, note: Note): void {
+  writeNoteRows(plan, note);
+  takeIn(plan, filter, note);
+}
 
 /** A filter in which states 0 and 1 are all that matters. */
 function scalar(plan: FilterPlan, mean: number, variance: number): Filter {
@@ -64,7 +70,7 @@ describe('compare and absorb', () => {
   it('keeps the covariance symmetric to the last bit, and its diagonal positive', () => {
     const plan = planFor();
     const filter = startFilter(plan);
-    for (const note of someNotes(5, 30)) takeIn(plan, filter, note);
+    for (const note of someNotes(5, 30)) take(plan, filter, note);
     let largest = 0;
     for (let row = 0; row < plan.size; row++) {
       expect(filter.covariance[row * plan.size + row]).toBeGreaterThanOrEqual(0);
@@ -117,7 +123,7 @@ describe('takeIn', () => {
       });
       const filter = startFilter(plan);
       const [note] = someNotes(1, 1);
-      takeIn(plan, filter, { ...note!, durationS, endS: 3000 });
+      take(plan, filter, { ...note!, durationS, endS: 3000 });
       expect(100 * Math.sqrt(filter.covariance[0]!)).toBeCloseTo(cmps, 2);
     }
   });
@@ -127,9 +133,9 @@ describe('takeIn', () => {
     const filter = startFilter(plan);
     const notes = someNotes(2, 24, 1).map((note) => ({ ...note, currentEastMps: 0.2, currentNorthMps: -0.1 }));
     const bias = plan.biasAt * plan.size + plan.biasAt;
-    takeIn(plan, filter, notes[0]!);
+    take(plan, filter, notes[0]!);
     expect(Math.sqrt(filter.covariance[bias]!)).toBeGreaterThan(0.09);
-    for (const note of notes.slice(1)) takeIn(plan, filter, note);
+    for (const note of notes.slice(1)) take(plan, filter, note);
     expect(Math.sqrt(filter.covariance[bias]!)).toBeLessThan(0.005);
     expect(filter.mean[0]).toBeCloseTo(0.2, 2);
     expect(filter.mean[1]).toBeCloseTo(-0.1, 2);
