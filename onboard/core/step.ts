@@ -36,9 +36,13 @@ const TO_1E3 = 1e3;
 const TO_1E4 = 1e4;
 const TO_1E6 = 1e6;
 const TO_1E9 = 1e9;
-/** One point of the loop has its uncertainty renewed every so many ticks, the own place at every so many. */
-const SIGMA_POINT_TICKS = 4;
-const SIGMA_HERE_TICKS = 15;
+/**
+ * The uncertainty of the current is renewed at one of sixteen places along the loop, and at the own place,
+ * every so many ticks: the whole loop in about four minutes, in which it hardly changes.
+ */
+const SIGMA_PLACES = 16;
+const SIGMA_PLACE_TICKS = 16;
+const SIGMA_HERE_TICKS = 20;
 
 /** Answers one sense. Only yardstick runs aid it. */
 export function step(state: State, sense: Sense | AidedSense): Steer {
@@ -119,13 +123,10 @@ function renewPicture(state: State, sense: Sense, minute: boolean): void {
   biasNow(estimator, state.bias);
   const here = { eastM: position.eastM, northM: position.northM, atS: sense.at_s };
   currentMeanAt(estimator, here, meanHere);
-  if (sense.tick % SIGMA_POINT_TICKS === 0) {
-    const point = (sense.tick / SIGMA_POINT_TICKS) % MAP_POINTS;
-    currentAt(
-      estimator,
-      { eastM: table.pointEastM[point]!, northM: table.pointNorthM[point]!, atS: sense.at_s },
-      there,
-    );
+  if (sense.tick % SIGMA_PLACE_TICKS === 0) {
+    const point = ((sense.tick / SIGMA_PLACE_TICKS) % SIGMA_PLACES) * (MAP_POINTS / SIGMA_PLACES);
+    const at = { eastM: table.pointEastM[point]!, northM: table.pointNorthM[point]!, atS: sense.at_s };
+    currentAt(estimator, at, there);
     table.sigmaMps[point] = Math.sqrt(there.varEastM2ps2 + there.varNorthM2ps2);
   }
   if (sense.tick % SIGMA_HERE_TICKS === 0) {
@@ -223,11 +224,19 @@ function estimateOf(state: State): Estimate {
   };
 }
 
+/** The uncertainty at a point of the loop, between the places that are renewed. */
+function sigmaBetween(sigmaMps: Float64Array, point: number): number {
+  const step = MAP_POINTS / SIGMA_PLACES;
+  const before = point - (point % step);
+  const share = (point - before) / step;
+  return (1 - share) * sigmaMps[before]! + share * sigmaMps[(before + step) % MAP_POINTS]!;
+}
+
 function mapOf(state: State): MapMessage {
   const { table } = state;
   return {
     east_mps: Array.from(table.currentEastMps, (value) => rounded(value, TO_1E6)),
     north_mps: Array.from(table.currentNorthMps, (value) => rounded(value, TO_1E6)),
-    sigma_mps: Array.from(table.sigmaMps, (value) => rounded(value, TO_1E6)),
+    sigma_mps: Array.from(table.sigmaMps, (_value, point) => rounded(sigmaBetween(table.sigmaMps, point), TO_1E6)),
   };
 }
