@@ -43,15 +43,23 @@ function isList(value: unknown, most: number, fits: (item: unknown) => boolean):
   return true;
 }
 
-const oneOf = (words: readonly string[]) => (value: unknown): boolean => words.includes(value as string);
+const oneOf =
+  (words: readonly string[]) =>
+  (value: unknown): boolean =>
+    words.includes(value as string);
 const isOrder = oneOf(ORDERS);
 const isFate = oneOf(HEARD_FATES);
 const isReason = oneOf(REASONS);
 const isState = oneOf(AGENT_STATES);
 
 function isFix(value: unknown): boolean {
-  return isFields(value, 4) && isTime(value['at_s']) && isMetres(value['east_m']) && isMetres(value['north_m'])
-    && isWithin(value['sigma_m'], Number.MIN_VALUE, 1e4);
+  return (
+    isFields(value, 4) &&
+    isTime(value['at_s']) &&
+    isMetres(value['east_m']) &&
+    isMetres(value['north_m']) &&
+    isWithin(value['sigma_m'], Number.MIN_VALUE, 1e4)
+  );
 }
 
 function isHeard(value: unknown): boolean {
@@ -59,10 +67,18 @@ function isHeard(value: unknown): boolean {
 }
 
 export function fitsSense(value: unknown): value is Sense {
-  return isFields(value, 9) && isTick(value['tick']) && isTime(value['at_s']) && isHeading(value['heading_deg'])
-    && isSpeed(value['speed_mps']) && isDepth(value['depth_m']) && isWithin(value['battery'], 0, 1)
-    && (value['fix'] === null || isFix(value['fix'])) && isList(value['heard'], HEARD_MAX, isHeard)
-    && isList(value['orders'], 8, isOrder);
+  return (
+    isFields(value, 9) &&
+    isTick(value['tick']) &&
+    isTime(value['at_s']) &&
+    isHeading(value['heading_deg']) &&
+    isSpeed(value['speed_mps']) &&
+    isDepth(value['depth_m']) &&
+    isWithin(value['battery'], 0, 1) &&
+    (value['fix'] === null || isFix(value['fix'])) &&
+    isList(value['heard'], HEARD_MAX, isHeard) &&
+    isList(value['orders'], 8, isOrder)
+  );
 }
 
 const VARIANCES = ['varEast_m2', 'varNorth_m2', 'varCurrentEast_m2ps2', 'varCurrentNorth_m2ps2'];
@@ -72,11 +88,20 @@ function isEstimate(value: unknown): boolean {
   if (!isFields(value, 16)) return false;
   for (const name of VARIANCES) if (!isWithin(value[name], 0, 1e12)) return false;
   for (const name of COVARIANCES) if (!isWithin(value[name], -1e12, 1e12)) return false;
-  return isMetres(value['east_m']) && isMetres(value['north_m']) && isSpeed(value['currentEast_mps'])
-    && isSpeed(value['currentNorth_mps']) && isWithin(value['phase'], 0, 1) && value['phase'] !== 1
-    && isWithin(value['compassBias_deg'], -180, 180) && isWithin(value['compassBiasSigma_deg'], 0, 180)
-    && isWithin(value['logScale'], -1, 1) && isWithin(value['logScaleSigma'], 0, 1)
-    && isWithin(value['notesHeld'], 0, 100_000) && Number.isInteger(value['notesHeld']);
+  return (
+    isMetres(value['east_m']) &&
+    isMetres(value['north_m']) &&
+    isSpeed(value['currentEast_mps']) &&
+    isSpeed(value['currentNorth_mps']) &&
+    isWithin(value['phase'], 0, 1) &&
+    value['phase'] !== 1 &&
+    isWithin(value['compassBias_deg'], -180, 180) &&
+    isWithin(value['compassBiasSigma_deg'], 0, 180) &&
+    isWithin(value['logScale'], -1, 1) &&
+    isWithin(value['logScaleSigma'], 0, 1) &&
+    isWithin(value['notesHeld'], 0, 100_000) &&
+    Number.isInteger(value['notesHeld'])
+  );
 }
 
 function isColumn(value: unknown): boolean {
@@ -84,13 +109,27 @@ function isColumn(value: unknown): boolean {
 }
 
 function isMap(value: unknown): boolean {
-  return isFields(value, 3) && isColumn(value['east_mps']) && isColumn(value['north_mps']) && isColumn(value['sigma_mps']);
+  return (
+    isFields(value, 3) &&
+    isColumn(value['east_mps']) &&
+    isColumn(value['north_mps']) &&
+    isColumn(value['sigma_mps'])
+  );
 }
 
 export function fitsSteer(value: unknown): value is Steer {
-  return isFields(value, 10) && isTick(value['tick']) && isHeading(value['heading_deg']) && isSpeed(value['speed_mps'])
-    && isDepth(value['depth_m']) && (value['say'] === null || isHex(value['say'])) && isState(value['state'])
-    && isList(value['reasons'], 8, isReason) && value['reasons'].length > 0
-    && isList(value['heard'], HEARD_MAX, isFate) && isEstimate(value['estimate'])
-    && (value['map'] === null || isMap(value['map']));
+  return (
+    isFields(value, 10) &&
+    isTick(value['tick']) &&
+    isHeading(value['heading_deg']) &&
+    isSpeed(value['speed_mps']) &&
+    isDepth(value['depth_m']) &&
+    (value['say'] === null || isHex(value['say'])) &&
+    isState(value['state']) &&
+    isList(value['reasons'], 8, isReason) &&
+    value['reasons'].length > 0 &&
+    isList(value['heard'], HEARD_MAX, isFate) &&
+    isEstimate(value['estimate']) &&
+    (value['map'] === null || isMap(value['map']))
+  );
 }

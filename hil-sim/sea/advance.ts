@@ -16,7 +16,15 @@ import { addedCurrents, changesAt, compassBiasAt, logScaleAt, ordersAt, rebootAt
 import { endArrivals, sendFrames, startModem, type Delivery, type ModemState } from './modem.ts';
 import type { SeaPlan } from './plan.ts';
 import type { Hearing, Reboot, Sea, Truth } from './sea.ts';
-import { depthReading, drawBiases, onboardTimeS, readCompassAndLog, readFix, startFixes, type FixState } from './sensors.ts';
+import {
+  depthReading,
+  drawBiases,
+  onboardTimeS,
+  readCompassAndLog,
+  readFix,
+  startFixes,
+  type FixState,
+} from './sensors.ts';
 import { soundSpeedMps } from './sound.ts';
 import { currentAt, type Water } from './water.ts';
 
@@ -78,10 +86,15 @@ export function startSea(plan: SeaPlan): Sea {
     ownBiasRad: truth.compassBiasRad.slice(),
     ownScale: truth.logScale.slice(),
     orders: plan.vehicles.map((vehicle) => ({
-      heading_deg: degFromRad(vehicle.startHeadingRad), speed_mps: 0, depth_m: vehicle.startDepthM,
+      heading_deg: degFromRad(vehicle.startHeadingRad),
+      speed_mps: 0,
+      depth_m: vehicle.startDepthM,
     })),
     fixes: startFixes(draw, plan.vehicles),
-    modem: startModem(plan, soundSpeedMps(temperatureDegC, salinityPsu, Math.min(depthM / 2, SOUND_DEPTH_MAX_M))),
+    modem: startModem(
+      plan,
+      soundSpeedMps(temperatureDegC, salinityPsu, Math.min(depthM / 2, SOUND_DEPTH_MAX_M)),
+    ),
     scratch: new Float64Array(2),
     counts: { tick: 0 },
     deliveries: [],
@@ -90,14 +103,19 @@ export function startSea(plan: SeaPlan): Sea {
   };
   renewTruth(state);
   return {
-    get tick() { return state.counts.tick; },
-    get framesSent() { return state.modem.counts.framesSent; },
+    get tick() {
+      return state.counts.tick;
+    },
+    get framesSent() {
+      return state.modem.counts.framesSent;
+    },
     tickS: plan.tickS,
     truth: state.truth,
     perceive: () => perceive(state),
     advance: (steers) => advance(state, steers),
     reboots: () => rebootsNow(state),
-    changes: () => changesAt(plan.faults, plan.orders, { timeS: state.counts.tick * plan.tickS, tickS: plan.tickS }),
+    changes: () =>
+      changesAt(plan.faults, plan.orders, { timeS: state.counts.tick * plan.tickS, tickS: plan.tickS }),
     takeHearings: () => state.hearings.splice(0),
     currentAt: (eastM, northM, timeS, out) => currentAt(state.water, { eastM, northM, timeS }, out),
   };
@@ -116,7 +134,9 @@ function rebootsNow(state: State): Reboot[] {
     const now = isDown(state, index, counts.tick);
     if (before === now) return [];
     const at = now ? counts.tick : counts.tick - 1;
-    return [{ index, phase: now ? 'down' : 'up', memory: rebootAt(plan.faults, index, at * plan.tickS) ?? 'lost' }];
+    return [
+      { index, phase: now ? 'down' : 'up', memory: rebootAt(plan.faults, index, at * plan.tickS) ?? 'lost' },
+    ];
   });
 }
 
@@ -166,14 +186,25 @@ function advance(state: State, steers: readonly (Steer | null)[]): void {
   });
   sendFrames(modem, truth, { draw, timeS });
   plan.vehicles.forEach((vehicle, index) => {
-    moveBody({ truth, index, plan: vehicle, water, order: orders[index]!, timeS, tickS: plan.tickS, scratch });
+    moveBody({
+      truth,
+      index,
+      plan: vehicle,
+      water,
+      order: orders[index]!,
+      timeS,
+      tickS: plan.tickS,
+      scratch,
+    });
   });
   counts.tick += 1;
   renewTruth(state);
   state.senses = null;
   state.deliveries = [];
   endArrivals(modem, counts.tick * plan.tickS, {
-    deliveries: state.deliveries, hearings: state.hearings, isDown: (index) => isDown(state, index, counts.tick),
+    deliveries: state.deliveries,
+    hearings: state.hearings,
+    isDown: (index) => isDown(state, index, counts.tick),
   });
 }
 
@@ -195,7 +226,10 @@ function renewTruth(state: State): void {
     currentAt(state.water, { eastM: truth.eastM[index]!, northM: truth.northM[index]!, timeS }, scratch);
     truth.currentEastMps[index] = scratch[0]!;
     truth.currentNorthMps[index] = scratch[1]!;
-    truth.compassBiasRad[index] = compassBiasAt(plan.faults, index, { timeS, ownRad: state.ownBiasRad[index]! });
+    truth.compassBiasRad[index] = compassBiasAt(plan.faults, index, {
+      timeS,
+      ownRad: state.ownBiasRad[index]!,
+    });
     truth.logScale[index] = logScaleAt(plan.faults, index, { timeS, own: state.ownScale[index]! });
   }
 }
