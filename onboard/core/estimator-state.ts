@@ -7,7 +7,9 @@ import { startBasis } from './basis.ts';
 import { layOut, type FilterPlan } from './filter.ts';
 import { startMap, type CurrentMap } from './map.ts';
 import { startNoteLog, type NoteLog } from './note-log.ts';
-import { startDrift, startLeg, type Anchor, type Drift, type Leg, type PositionAnswer, type PositionRows } from './reckon.ts';
+import {
+  startDrift, startLeg, type Anchor, type Drift, type Leg, type PositionAnswer, type PositionRows,
+} from './reckon.ts';
 import { startTrack, type Track } from './track.ts';
 
 const HOUR_S = 3600;
@@ -42,10 +44,11 @@ export interface Memory {
   sinceSpread: number;
   /** Changes of the map that the drift has seen. */
   changesSeen: number;
-  /** Fixes in a row that failed the gate, and how far off the last of them was. */
+  /** Fixes in a row that failed the gate. */
   refused: number;
-  refusedEastM: number;
-  refusedNorthM: number;
+  /** How far the last fix was off from where the vehicle thought it was. */
+  offEastM: number;
+  offNorthM: number;
   /** Whether this agent has issued a note since it started. */
   hasIssued: boolean;
   /** The greatest number that any peer has said of this vehicle's own notes. */
@@ -127,8 +130,8 @@ export function startEstimator(mission: Mission): Estimator {
       sinceSpread: SPREAD_TICKS,
       changesSeen: -1,
       refused: 0,
-      refusedEastM: 0,
-      refusedNorthM: 0,
+      offEastM: 0,
+      offNorthM: 0,
       hasIssued: false,
       ownNumberHeard: 0,
       isLost: false,

@@ -35,7 +35,8 @@ export function reckonTick(estimator: Estimator, tick: EstimatorTick): Note | nu
   const { memory, map } = estimator;
   moveOn(estimator, tick);
   memory.sinceSpread += 1;
-  if (memory.changesSeen !== map.counts.changes || memory.sinceSpread >= SPREAD_TICKS) renewPosition(estimator);
+  const isStale = memory.changesSeen !== map.counts.changes || memory.sinceSpread >= SPREAD_TICKS;
+  if (isStale) renewPosition(estimator);
   if (tick.fix === null) return null;
   if (!passesGate(estimator, tick.fix)) return null;
   const note = takeFix(estimator, tick.fix, tick.unrounded);
@@ -147,7 +148,8 @@ function moveOn(estimator: Estimator, tick: EstimatorTick): void {
     };
     addWay(map.plan, leg, way);
     addTrack(track, way);
-    if (memory.changesSeen === map.counts.changes) movePosition(map, { leg, way, drift, selfIndex }, position);
+    const isFresh = memory.changesSeen === map.counts.changes;
+    if (isFresh) movePosition(map, { leg, way, drift, selfIndex }, position);
   } else {
     resetLeg(leg, tick.atS);
     memory.hasTicked = true;

@@ -8,8 +8,8 @@ import { NOTE_NUMBER_MAX, NOTE_SKIPPED_MAX, roundedNote, type Note } from '../..
 import type { Estimator, EstimatorTick, Memory } from './estimator-state.ts';
 import { meanCurrentAt, takeIntoMap } from './map.ts';
 import { newestNumber } from './note-log.ts';
-import { addWay, positionSpread, resetLeg, writePositionRows, type Anchor } from './reckon.ts';
-import { midTrack, tailWay, trackCount, wayBack, type Track } from './track.ts';
+import { addWay, positionSpread, resetLeg, writePositionRows } from './reckon.ts';
+import { midTrack, tailWay, trackCount, wayBack } from './track.ts';
 
 /** Fixes in a row that fail the gate before the gate is held to be wrong, whatever they say. */
 const REFUSED_MAX = 3;
@@ -36,19 +36,21 @@ export function passesGate(estimator: Estimator, fix: EstimatorFix): boolean {
   const distance2 =
     (varNorth * east * east - 2 * cross * east * north + varEast * north * north) / determinant;
   const isNear = distance2 <= estimator.mission.onboard.fixGate ** 2;
-  const isBelieved = isNear || memory.refused + 1 >= REFUSED_MAX || (memory.refused > 0 && isSameWay(memory, east, north));
+  const isAgain = memory.refused + 1 >= REFUSED_MAX || (memory.refused > 0 && isSameWay(memory, east, north));
+  const isBelieved = isNear || isAgain;
   memory.refused = isBelieved ? 0 : memory.refused + 1;
-  memory.refusedEastM = east;
-  memory.refusedNorthM = north;
+  memory.offEastM = east;
+  memory.offNorthM = north;
   return isBelieved;
 }
 
 /** Whether a fix is off much as the refused one before it was: a drift or a jump, not two outliers. */
 function isSameWay(memory: Memory, eastM: number, northM: number): boolean {
-  const beforeM2 = memory.refusedEastM ** 2 + memory.refusedNorthM ** 2;
+  const beforeM2 = memory.offEastM ** 2 + memory.offNorthM ** 2;
   const ratio2 = (eastM ** 2 + northM ** 2) / beforeM2;
-  const along = eastM * memory.refusedEastM + northM * memory.refusedNorthM;
-  return along > SAME_WAY_COSINE * beforeM2 * Math.sqrt(ratio2) && ratio2 >= SAME_WAY_LEAST ** 2 && ratio2 <= SAME_WAY_MOST ** 2;
+  const along = eastM * memory.offEastM + northM * memory.offNorthM;
+  if (along <= SAME_WAY_COSINE * beforeM2 * Math.sqrt(ratio2)) return false;
+  return ratio2 >= SAME_WAY_LEAST ** 2 && ratio2 <= SAME_WAY_MOST ** 2;
 }
 
 /** Ends the leg at the fix: issues its note, if there is one, and starts the next leg there. */
@@ -86,7 +88,7 @@ function issueNote(
     unrounded: boolean;
   },
 ): Note | null {
-  const { anchor, leg, log, memory, selfIndex, track, map } = estimator;
+  const { anchor, leg, log, memory, selfIndex, map } = estimator;
   const last = Math.max(newestNumber(log, selfIndex), memory.ownNumberHeard);
   const skip = !memory.hasIssued && last > 0 ? NOTE_SKIPPED_MAX : 0;
   const number = last + 1 + skip;
@@ -105,7 +107,7 @@ function issueNote(
     startNorthM: anchor.northM,
     endEastM: fix.eastM,
     endNorthM: fix.northM,
-    sagM: sagOf(track, anchor, fix, { midS: leg.startS + seconds / 2 }),
+    sagM: sagOf(estimator, fix, leg.startS + seconds / 2),
     chained: anchor.noteNumber > 0 && anchor.noteNumber === last,
     fixSigmaM: fix.sigmaM,
     skipped: skip,
@@ -120,15 +122,19 @@ function issueNote(
   return note;
 }
 
-/** How far the middle of the way lies to the right of the chord between its fixes. */
-function sagOf(track: Track, from: Anchor, to: EstimatorFix, at: { midS: number }): number {
-  const middle = midTrack(track, at.midS);
+/**
+ * How far the middle of the way lies to the right of the chord between its fixes: the place believed
+ * then, and half of what the end turned out to be off.
+ */
+function sagOf(estimator: Estimator, to: EstimatorFix, midS: number): number {
+  const { anchor: from, track, memory } = estimator;
+  const middle = midTrack(track, midS);
   if (middle === null) return 0;
   const east = to.eastM - from.eastM;
   const north = to.northM - from.northM;
   const chordM = Math.sqrt(east * east + north * north);
   if (!(chordM > 1)) return 0;
-  const offEast = middle.eastM - (from.eastM + to.eastM) / 2;
-  const offNorth = middle.northM - (from.northM + to.northM) / 2;
+  const offEast = middle.eastM + memory.offEastM / 2 - (from.eastM + to.eastM) / 2;
+  const offNorth = middle.northM + memory.offNorthM / 2 - (from.northM + to.northM) / 2;
   return (offEast * north - offNorth * east) / chordM;
 }

@@ -1,5 +1,6 @@
 /**
- * The current map: a bank of filters over the notes in the log, always as if they had come in canonical order.
+ * The current map: a bank of filters over the notes in the log, always as if they had come in canonical
+ * order.
  *
  * A note that is the last in order is taken in at once. A late one rewinds a second bank to the
  * nearest checkpoint before it, which then works its way back through the log, a bounded number of
@@ -100,12 +101,16 @@ export function workMap(map: CurrentMap): void {
   counts.isBehind = false;
 }
 
+function timeOf(bank: Bank): number {
+  return bank.members[0]!.clock.atS;
+}
+
 /** Keeps a state of the canonical line, if the last one kept is old enough; thins older ones out. */
 function keepCheckpoint(map: CurrentMap, line: Bank): void {
   const { counts, checkpoints } = map;
   const last = counts.checkpoints === 0 ? null : checkpoints[counts.checkpoints - 1]!;
-  if (last !== null && line.members[0]!.clock.atS - last.members[0]!.clock.atS < CHECKPOINT_EVERY_S) return;
-  if (counts.checkpoints === CHECKPOINTS_MAX) dropOne(map, line.members[0]!.clock.atS);
+  if (last !== null && timeOf(line) - timeOf(last) < CHECKPOINT_EVERY_S) return;
+  if (counts.checkpoints === CHECKPOINTS_MAX) dropOne(map, timeOf(line));
   copyBank(line, checkpoints[counts.checkpoints]!);
   counts.checkpoints += 1;
 }
@@ -117,8 +122,8 @@ function dropOne(map: CurrentMap, nowS: number): void {
   let least = Infinity;
   for (let index = 0; index < counts.checkpoints - 1; index++) {
     const beforeS =
-      index === 0 ? checkpoints[0]!.members[0]!.clock.atS - CHECKPOINT_EVERY_S : checkpoints[index - 1]!.members[0]!.clock.atS;
-    const afterS = checkpoints[index + 1]!.members[0]!.clock.atS;
+      index === 0 ? timeOf(checkpoints[0]!) - CHECKPOINT_EVERY_S : timeOf(checkpoints[index - 1]!);
+    const afterS = timeOf(checkpoints[index + 1]!);
     const widened = (afterS - beforeS) / (nowS - beforeS);
     if (widened < least) {
       least = widened;

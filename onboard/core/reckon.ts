@@ -100,7 +100,7 @@ export function addWay(plan: FilterPlan, leg: Leg, way: Way): void {
   }
 }
 
-/** Each mode's mean at the start of the leg, and its change per second: what a tick's way needs of the map. */
+/** Each mode's mean at the start of the leg and its change per second: what a tick needs of the map. */
 export interface Drift {
   readonly value: Float64Array;
   readonly rate: Float64Array;
@@ -220,7 +220,10 @@ export function meanPosition(
 
 /** The covariance of the position from written rows; `whiteM2` per axis is the noise of compass and log. */
 export function positionSpread(
-  map: CurrentMap, of: { anchor: Anchor; selfIndex: number; whiteM2: number }, rows: PositionRows, out: PositionAnswer,
+  map: CurrentMap,
+  of: { anchor: Anchor; selfIndex: number; whiteM2: number },
+  rows: PositionRows,
+  out: PositionAnswer,
 ): void {
   const { size } = map.plan;
   const own = isInFilter(map, of.anchor, of.selfIndex) ? 0 : of.anchor.sigmaM ** 2;

@@ -139,5 +139,6 @@ function openUp(plan: FilterPlan, filter: Filter, origin: number): void {
   add(plan.newFixAt + 1, OPEN_FIX_M);
   add(0, OPEN_UNIFORM_MPS);
   add(1, OPEN_UNIFORM_MPS);
-  for (let mode = 0; mode < plan.basis.count; mode++) add(plan.valueAt + mode, OPEN_MODES * plan.modeSigmaMps);
+  const modeSigmaMps = OPEN_MODES * plan.modeSigmaMps;
+  for (let mode = 0; mode < plan.basis.count; mode++) add(plan.valueAt + mode, modeSigmaMps);
 }

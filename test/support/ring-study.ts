@@ -11,6 +11,8 @@ import { randomFrom } from './estimating.ts';
 import { missionFor } from './mission.ts';
 import { DEMO_SENSORS, RING, drawnWater, ringVehicle, type RingSensors, type RingVehicle, type Upset, type Water } from './ring-water.ts';
 
+export { DEMO_SENSORS, drawnWater };
+
 export interface StudyOptions {
   readonly seed: number;
   readonly hours?: number;
