@@ -133,7 +133,7 @@ function vehicleMeasures(m: Measures, index: number, isFormedUp: boolean): Vehic
   const since = (value: number | null): number | null => (isFormedUp ? value : null);
   return {
     vehicle: m.names[index]!,
-    isExcepted: m.isCounted[index] === 0,
+    isExcepted: m.except.includes(m.names[index]!),
     crossTrackRms: since(rmsOfVehicle(tallies.crossTrack, index)),
     crossTrackMax: since(greatestOfVehicle(tallies.crossTrack, index)),
     gapRms: since(rmsOfVehicle(tallies.gap, index)),

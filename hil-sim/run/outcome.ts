@@ -4,6 +4,7 @@ import type { Trial } from '../trial/schema.ts';
 import { clock, figure, marginFigure } from './figures.ts';
 import { isLeast, judgeLimits, marginShare, verdictOf, type LimitResult } from './limits.ts';
 import type { MeasureReport } from './measure-report.ts';
+import { faultsAt } from './script-words.ts';
 import { MEASURE_NAMES, type MeasureName, type MeasureValues } from './measures.ts';
 
 const seconds = z.number().nullable();
@@ -100,7 +101,12 @@ function whyFailed(limits: readonly LimitResult[], input: OutcomeInput): NonNull
   }
   return first === null
     ? null
-    : { firstBreach: first.name, at_s: brokeAtS(first, input), faultsThen: [], repeat: input.repeat };
+    : {
+        firstBreach: first.name,
+        at_s: brokeAtS(first, input),
+        faultsThen: faultsAt(input.trial, firstS),
+        repeat: input.repeat,
+      };
 }
 
 /**

@@ -9,6 +9,7 @@ import { html, whole } from './report-html.ts';
 import type { ReportInput } from './report-input.ts';
 import { limitsSection } from './report-limits.ts';
 import { markPicture } from './report-marks.ts';
+import { HATCH, scriptTable } from './report-script.ts';
 import { REPORT_STYLE } from './report-style.ts';
 import { timeSection } from './report-time.ts';
 import { waterSection } from './report-water.ts';
@@ -34,10 +35,13 @@ function page(input: ReportInput): string {
     '<meta name="viewport" content="width=device-width, initial-scale=1">' +
     `<title>${html(`${outcome.title}: ${outcome.verdict}`)}</title>` +
     `<style>${REPORT_STYLE}</style></head>\n<body>` +
-    `<header>${opening(input)}</header>\n` +
+    `${HATCH}<header>${opening(input)}</header>\n` +
     `<section>${limitsSection(outcome)}</section>\n` +
     `<section class="long">${waterSection(input)}</section>\n` +
     `<section class="long">${timeSection(input)}</section>\n` +
+    (input.trial.faults.length + input.trial.orders.length === 0
+      ? ''
+      : `<section>${scriptTable(input)}</section>\n`) +
     `<section class="long">${vehiclesSection(input)}</section>\n` +
     `<section>${measuresSection(input)}</section>\n` +
     `<section>${runSection(input)}</section>\n` +
