@@ -3,7 +3,7 @@ import * as Plot from '@observablehq/plot';
 import { drawing } from './report-html.ts';
 import { markOf } from './report-marks.ts';
 import type { ReportInput } from './report-input.ts';
-import { scriptMarks } from './report-script.ts';
+import { scriptSpans, scriptWords } from './report-script.ts';
 
 const WIDTH = 520;
 const HEIGHT = 230;
@@ -116,13 +116,14 @@ export function linesPlot(input: ReportInput, lines: Lines): string {
   return drawing(`${lines.heading} over time, ${lines.label}`, {
     ...frame(input, { label: lines.label, domain, reverse: lines.reverse ?? false }),
     marks: [
-      ...scriptMarks(input),
+      ...scriptSpans(input),
       ...input.trial.fleet.vehicles.flatMap((_vehicle, index) =>
         vehicleMarks(input, lines, { index, domain }),
       ),
       ...fleetMarks(lines),
       ...(lines.isState === true ? [] : formedUpMarks(input)),
       ...levelMarks(lines, top),
+      ...scriptWords(input),
     ],
   });
 }
@@ -188,9 +189,10 @@ export function deliveryPlot(input: ReportInput): string {
   return drawing('Share of frames heard and used over time, %', {
     ...frame(input, { label: '%', domain: [0, 100] }),
     marks: [
-      ...scriptMarks(input),
+      ...scriptSpans(input),
       Plot.line(points, { ...AT, stroke: INK, strokeWidth: 1.3, curve: 'step' }),
       ...formedUpMarks(input),
+      ...scriptWords(input),
     ],
   });
 }

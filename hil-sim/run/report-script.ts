@@ -11,8 +11,8 @@ export const HATCH =
   '<pattern id="hatch" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)">' +
   '<path d="M0 0V6" stroke="var(--ink)" stroke-width="1.2" stroke-opacity="0.35"/></pattern></defs></svg>';
 
-/** Marks of the script; words of neighbours stand on lines of their own. */
-export function scriptMarks({ trial, report }: ReportInput): Plot.Markish[] {
+/** Spans and moments of the script; they go under the lines. */
+export function scriptSpans({ trial, report }: ReportInput): Plot.Markish[] {
   const lines = scriptLines(trial);
   const hours = (timeS: number): number => Math.min(timeS, report.lastS) / 3600;
   const spans = lines
@@ -22,21 +22,26 @@ export function scriptMarks({ trial, report }: ReportInput): Plot.Markish[] {
   return [
     Plot.rectX(spans, { x1: 'x1', x2: 'x2', fill: 'url(#hatch)' }),
     Plot.ruleX(orders, { stroke: 'var(--ink)', strokeDasharray: '5 3' }),
-    ...lines.map((line, index) =>
-      Plot.text([hours(line.fromS)], {
-        x: (h: number) => h,
-        frameAnchor: 'top',
-        textAnchor: hours(line.fromS) > report.lastS / 5400 ? 'end' : 'start',
-        dx: 3,
-        dy: 16 + 13 * (index % 4),
-        fontSize: 10,
-        fill: 'var(--ink)',
-        stroke: 'var(--paper)',
-        strokeWidth: 3,
-        text: () => line.short,
-      }),
-    ),
   ];
+}
+
+/** Words of the script; they go over the lines, those of neighbours on lines of their own. */
+export function scriptWords({ trial, report }: ReportInput): Plot.Markish[] {
+  const hours = (timeS: number): number => Math.min(timeS, report.lastS) / 3600;
+  return scriptLines(trial).map((line, index) =>
+    Plot.text([hours(line.fromS)], {
+      x: (h: number) => h,
+      frameAnchor: 'top',
+      textAnchor: hours(line.fromS) > report.lastS / 5400 ? 'end' : 'start',
+      dx: 3,
+      dy: 16 + 13 * (index % 4),
+      fontSize: 10,
+      fill: 'var(--ink)',
+      stroke: 'var(--paper)',
+      strokeWidth: 3,
+      text: () => line.short,
+    }),
+  );
 }
 
 /** The script as a table; empty if the trial has none. */

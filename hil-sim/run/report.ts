@@ -3,7 +3,7 @@
  * why, the limits, the water, time, the vehicles, and how to run it again.
  */
 import { figure, span } from './figures.ts';
-import { MEASURES, MEASURE_NAMES, type VehicleMeasures } from './measures.ts';
+import { MEASURES, MEASURE_NAMES, type MeasureName, type VehicleMeasures } from './measures.ts';
 import { exceptSentence, verdictSentence, worstWords } from './outcome.ts';
 import { html, whole } from './report-html.ts';
 import type { ReportInput } from './report-input.ts';
@@ -95,19 +95,26 @@ function vehiclesSection({ report }: ReportInput): string {
   );
 }
 
-function measuresSection({ report }: ReportInput): string {
+function measuresSection({ report, outcome }: ReportInput): string {
+  const { yardsticks } = outcome;
+  const beside = (name: MeasureName, of: 'central' | 'known'): string =>
+    yardsticks === undefined ? '' : `<td>${whole(figure(yardsticks[of][name] ?? null, MEASURES[name].unit))}</td>`;
+  const heads =
+    yardsticks === undefined ? '' : '<th scope="col">notes shared at once</th><th scope="col">current known</th>';
   const rows = MEASURE_NAMES.map((name) => {
     const value = report.values[name];
     return (
       `<tr><td><b>${name}</b> <span class="says">${html(MEASURES[name].says)}</span></td>` +
       `<td>${whole(figure(value, MEASURES[name].unit))}</td>` +
+      beside(name, 'central') +
+      beside(name, 'known') +
       `<td>${value === null ? '' : html(worstWords(report.worst[name]))}</td></tr>`
     );
   });
   return (
     '<h2>Measures</h2><div class="scroll"><table class="measures">' +
     '<thead><tr><th scope="col">measure</th><th scope="col">value</th>' +
-    `<th scope="col">worst, or least</th></tr></thead><tbody>${rows.join('')}</tbody></table></div>`
+    `${heads}<th scope="col">worst, or least</th></tr></thead><tbody>${rows.join('')}</tbody></table></div>`
   );
 }
 
