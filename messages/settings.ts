@@ -97,7 +97,7 @@ export const SETTINGS = {
     max: 3,
     says: 'prior sd of what is left, per component',
   },
-  mapLength: { unit: 'm', default: 500, min: 20, max: 1e5, says: 'length over which what is left changes' },
+  mapLength: { unit: 'm', default: 600, min: 20, max: 1e5, says: 'length over which what is left changes' },
   mapTime: { unit: 's', default: 18_000, min: 60, max: 1e7, says: 'time over which what is left changes' },
   mapModes: { unit: 'count', default: 16, min: 4, max: 48, says: 'number of modes of the map' },
   noteSigma: {
