@@ -52,5 +52,6 @@ export function scriptTable({ trial }: ReportInput): string {
     const until = line.untilS === line.fromS ? '' : line.untilS === Infinity ? 'the end' : clock(line.untilS);
     return `<tr><td>${clock(line.fromS)}</td><td>${until}</td><td>${html(line.words)}</td></tr>`;
   };
-  return `<h2>Script</h2><table><thead><tr><th>from</th><th>until</th><th>what</th></tr></thead><tbody>${lines.map(row).join('')}</tbody></table>`;
+  const head = '<thead><tr><th>from</th><th>until</th><th>what</th></tr></thead>';
+  return `<h2>Script</h2><table>${head}<tbody>${lines.map(row).join('')}</tbody></table>`;
 }
