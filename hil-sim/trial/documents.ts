@@ -1,57 +1,36 @@
 /**
- * YAML files joined into one tree, with the place of every key kept: a section may be a path to
- * another file, relative to the file that names it; `--set` changes the tree after joining.
+ * A trial's files joined into one tree: a section may be a path to another file, relative to the file
+ * that names it.
  */
 import { readFileSync, statSync } from 'node:fs';
 import { dirname, relative, resolve } from 'node:path';
-import { LineCounter, isMap, isScalar, isSeq, parseDocument, type Node } from 'yaml';
-import type { Problem } from './problem.ts';
-
-export interface Place {
-  readonly file: string;
-  readonly line: number | null;
-  readonly column: number | null;
-}
-
-/** A tree of plain values and, for each key path (joined by \0), where it stands. */
-export interface Tree {
-  value: unknown;
-  readonly places: Map<string, Place>;
-  readonly keyPlaces: Map<string, Place>;
-}
-
-export type Path = readonly (string | number)[];
+import { problemAt, type Problem } from './problem.ts';
+import { emptyTree, placeOf, type Path, type Place, type Tree } from './tree.ts';
+import { readYaml } from './yaml-text.ts';
 
 const SECTIONS = ['mission', 'fleet', 'onboard', 'water', 'modem', 'faults', 'orders', 'limits'];
-const FILE_BYTES_MAX = 4 * 1024 * 1024;
-const FILES_DEEP_MAX = 8;
+const FILE_BYTES_MAX = 1024 * 1024;
 
-export const pathKey = (path: Path): string => path.join('\0');
-
-/** The place of a path, or of the nearest parent that has one. */
-export function placeOf(tree: Tree, path: Path, preferKey = false): Place {
-  for (let length = path.length; length >= 0; length--) {
-    const key = pathKey(path.slice(0, length));
-    const place =
-      (preferKey && length === path.length ? tree.keyPlaces.get(key) : undefined) ?? tree.places.get(key);
-    if (place !== undefined) return place;
-  }
-  return { file: '', line: null, column: null };
-}
-
-/** Reads a trial and the files that its sections name; problems are added to `problems`. */
-export function readTree(path: string, problems: Problem[]): Tree {
-  const tree: Tree = { value: undefined, places: new Map(), keyPlaces: new Map() };
-  tree.value = readFile(resolve(path), { tree, at: [], problems, chain: [] });
-  return tree;
-}
-
-interface Reading {
+export interface Joined {
   readonly tree: Tree;
-  readonly at: Path;
+  /** The files that were read, the trial's own first. */
+  readonly sources: readonly string[];
+}
+
+interface Joining {
+  readonly tree: Tree;
   readonly problems: Problem[];
-  /** Files being read, outermost first. */
-  readonly chain: readonly string[];
+  readonly sources: string[];
+}
+
+/** Reads a trial and the files that its sections name; what is wrong is added to `problems`. */
+export function readTree(path: string, problems: Problem[]): Joined {
+  const joining: Joining = { tree: emptyTree(), problems, sources: [] };
+  const own = resolve(path);
+  const trouble = troubleWith(own);
+  if (trouble === null) joining.tree.value = readOne(own, [], joining);
+  else problems.push(problemAt({ file: shownName(own), line: null, column: null }, { key: '', ...trouble }));
+  return { tree: joining.tree, sources: joining.sources };
 }
 
 /** The name that a person knows a file by: relative to where they stand, if that is shorter. */
@@ -60,103 +39,69 @@ function shownName(path: string): string {
   return near !== '' && near.length < path.length ? near : path;
 }
 
-function readText(path: string): { text: string } | { trouble: string } {
+interface Trouble {
+  readonly found: string;
+  readonly allowed: string;
+}
+
+const SYSTEM_WORDS: Record<string, string> = {
+  ENOENT: 'does not exist',
+  ENOTDIR: 'does not exist',
+  EACCES: 'cannot be read: no permission',
+  ELOOP: 'cannot be read: its links run in a circle',
+  ENAMETOOLONG: 'cannot be read: its name is too long',
+};
+
+/** Why a path cannot be read as a YAML file, or null. */
+function troubleWith(path: string): Trouble | null {
+  const allowed = 'must be a YAML file';
   try {
     const stat = statSync(path);
-    if (stat.isDirectory()) return { trouble: 'is a folder, but must be a YAML file' };
-    if (stat.size > FILE_BYTES_MAX) return { trouble: 'is larger than 4 MiB, but must be a trial file' };
-    const text = readFileSync(path, 'utf8');
-    if (/[\0\ufffd]/.test(text)) return { trouble: 'is not text in UTF-8' };
-    return { text };
+    if (stat.isDirectory()) return { found: 'is a folder', allowed };
+    if (!stat.isFile()) return { found: 'is no plain file', allowed };
+    if (stat.size > FILE_BYTES_MAX) return { found: 'is larger than 1 MiB', allowed };
+    const isText = !/[\0\ufffd]/.test(readFileSync(path, 'utf8'));
+    return isText ? null : { found: 'is not text in UTF-8', allowed };
   } catch (error) {
-    const { code } = error as { code?: string };
-    return { trouble: code === 'ENOENT' ? 'does not exist' : `cannot be read (${code ?? String(error)})` };
+    const code = (error as { code?: string }).code ?? String(error);
+    return { found: SYSTEM_WORDS[code] ?? `cannot be read (${code})`, allowed };
   }
 }
 
-function readFile(path: string, reading: Reading): unknown {
-  const file = shownName(path);
-  const report = (message: string, place: Place = { file, line: null, column: null }): undefined => {
-    reading.problems.push({ ...place, key: reading.at.join('.'), message });
-    return undefined;
-  };
-  if (reading.chain.includes(path)) return report('names itself, by way of other files');
-  if (reading.chain.length >= FILES_DEEP_MAX) return report('is named by files more than 8 deep');
-  const read = readText(path);
-  if ('trouble' in read) return report(read.trouble);
-  const lines = new LineCounter();
-  const document = parseDocument(read.text, { lineCounter: lines, uniqueKeys: true, merge: false });
-  for (const error of [...document.errors, ...document.warnings]) {
-    const { line, col } = lines.linePos(error.pos[0]);
-    const message = `YAML: ${error.message.split('\n')[0]!.replace(/ at line \d+, column \d+:?$/, '')}`;
-    report(message, { file, line, column: col });
-  }
-  if (document.errors.length > 0) return undefined;
-  if (document.contents === null) return report('is empty, but must hold keys and values');
-  reading.tree.places.set(pathKey(reading.at), { file, line: 1, column: 1 });
-  return walk(document.contents as Node, {
-    ...reading,
-    chain: [...reading.chain, path],
-    file,
-    path,
-    lines,
-    report,
+/** Reads a file that is known to be readable text, into the tree at `path`. */
+function readOne(file: string, at: Path, joining: Joining): unknown {
+  const { tree, problems, sources } = joining;
+  const shown = shownName(file);
+  sources.push(file);
+  const placeAt = (line: number, column: number): Place => ({ file: shown, line, column });
+  const resolveText = (name: string, path: Path): Section | null => section(name, path, { ...joining, file });
+  const value = readYaml(readFileSync(file, 'utf8'), at, {
+    tree, problems, placeAt,
+    ...(at.length === 0 ? { resolve: resolveText } : {}),
   });
-}
-
-interface Walking extends Reading {
-  readonly file: string;
-  readonly path: string;
-  readonly lines: LineCounter;
-  readonly report: (message: string, place?: Place) => undefined;
-}
-
-function placeIn(walking: Walking, node: Node): Place {
-  const { line, col } = walking.lines.linePos(node.range?.[0] ?? 0);
-  return { file: walking.file, line, column: col };
-}
-
-function walk(node: Node | null, walking: Walking): unknown {
-  if (node === null) return null;
-  const { tree, at } = walking;
-  if (!tree.places.has(pathKey(at)) || at.length > 0) tree.places.set(pathKey(at), placeIn(walking, node));
-  if (isMap(node)) {
-    const value: Record<string, unknown> = {};
-    for (const pair of node.items) {
-      const keyNode = pair.key as Node;
-      const key = isScalar(keyNode) ? String(keyNode.value) : String(keyNode);
-      const path = [...at, key];
-      tree.keyPlaces.set(pathKey(path), placeIn(walking, keyNode));
-      Object.defineProperty(value, key, {
-        value: walkSection(pair.value as Node | null, { ...walking, at: path }),
-        enumerable: true,
-        writable: true,
-        configurable: true,
-      });
-    }
-    return value;
-  }
-  if (isSeq(node))
-    return node.items.map((item, index) => walk(item as Node, { ...walking, at: [...at, index] }));
-  if (isScalar(node)) return node.value;
-  return walking.report('is an alias, but values are written out here', placeIn(walking, node));
-}
-
-/** A section of a trial, or the file that it names. */
-function walkSection(node: Node | null, walking: Walking): unknown {
-  const { at } = walking;
-  const isSection = at.length === 1 && SECTIONS.includes(String(at[0]));
-  if (!isSection || node === null || !isScalar(node) || typeof node.value !== 'string')
-    return walk(node, walking);
-  const before = walking.problems.length;
-  const value = readFile(resolve(dirname(walking.path), node.value), walking);
-  if (walking.problems.length > before && value === undefined) {
-    const place = placeIn(walking, node);
-    walking.problems.push({
-      ...place,
-      key: at.join('.'),
-      message: `names the file '${node.value}', which cannot be used`,
-    });
+  if (value === null) {
+    const empty = { key: at.join('.'), found: 'is empty', allowed: 'must hold keys and values' };
+    problems.push(problemAt({ file: shown, line: null, column: null }, empty));
+    tree.unread.push(at);
+    return undefined;
   }
   return value;
+}
+
+interface Section {
+  readonly value: unknown;
+}
+
+/** What a file holds that a section names; null for text that is no section. */
+function section(name: string, at: Path, joining: Joining & { readonly file: string }): Section | null {
+  const { tree, problems, sources, file } = joining;
+  if (at.length !== 1 || !SECTIONS.includes(String(at[0]))) return null;
+  const named = resolve(dirname(file), name);
+  const circle = named === file ? { found: 'is the trial itself', allowed: 'must be another file' } : null;
+  const trouble = circle ?? troubleWith(named);
+  if (trouble === null) return { value: readOne(named, at, { tree, problems, sources }) };
+  const found = `names the file '${name}', which ${trouble.found}`;
+  problems.push(problemAt(placeOf(tree, at), { key: at.join('.'), found, allowed: trouble.allowed }));
+  tree.unread.push(at);
+  return { value: undefined };
 }

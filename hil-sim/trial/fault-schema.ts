@@ -1,4 +1,4 @@
-/** Faults and orders of a trial file: the keys of each kind, as DESIGN's table has them. */
+/** Faults and orders of a trial file: the keys of each kind. */
 import { z } from 'zod';
 import { ORDERS } from '../../messages/sense.ts';
 import { quantity, type Quantity } from './quantity.ts';
@@ -15,6 +15,7 @@ const vehicle = { vehicle: names.optional().describe('absent: all') };
 const share = quantity('share', { min: 0, max: 1 });
 const time = quantity('time', { min: 0, max: 600 });
 const angle = quantity('angle', { min: -Math.PI, max: Math.PI });
+const heading = quantity('angle', { min: -2 * Math.PI, max: 2 * Math.PI });
 const ratio = quantity('share', { min: -0.5, max: 0.5 });
 const speed = quantity('speed', { min: 0, max: 50 });
 const length = quantity('length', { min: -1e6, max: 1e6 });
@@ -24,7 +25,7 @@ export const eddyKeys = {
   radius: quantity('length', { above: 0, max: 1e6 }),
   peak: speed,
   turn: z.enum(['clockwise', 'anticlockwise']),
-  moving: z.strictObject({ set: quantity('angle', { min: -2 * Math.PI, max: 2 * Math.PI }), drift: speed }).optional(),
+  moving: z.strictObject({ set: heading, drift: speed }).optional(),
 };
 
 const optional = (of: Quantity) => of.optional();
@@ -32,8 +33,8 @@ const optional = (of: Quantity) => of.optional();
 export const faultSchema = z.discriminatedUnion('kind', [
   z.strictObject({
     kind: z.literal('link'), ...span, from: names.optional(), to: names.optional(),
-    loss: optional(share), burst: z.number().min(1).max(1000).optional(), delay: optional(time),
-    jitter: optional(time), repeat: optional(share), garble: optional(share),
+    loss: optional(share), burst: z.number().min(1).max(1000).optional(),
+    delay: optional(time), jitter: optional(time), repeat: optional(share), garble: optional(share),
   }),
   z.strictObject({
     kind: z.literal('compass'), ...span, ...vehicle,
@@ -43,7 +44,8 @@ export const faultSchema = z.discriminatedUnion('kind', [
   }),
   z.strictObject({
     kind: z.literal('log'), ...span, ...vehicle,
-    step: optional(ratio).describe('added to the scale error'), scale: optional(ratio).describe('in its place'),
+    step: optional(ratio).describe('added to the scale error'),
+    scale: optional(ratio).describe('in its place'),
   }),
   z.strictObject({
     kind: z.literal('fix'), ...span, ...vehicle,
@@ -52,10 +54,13 @@ export const faultSchema = z.discriminatedUnion('kind', [
     outliers: optional(share),
     outlierSigma: quantity('length', { above: 0, max: 1e5 }).optional(),
   }),
-  z.strictObject({ kind: z.literal('reboot'), ...span, ...vehicle, memory: z.enum(['lost', 'kept']).default('lost') }),
+  z.strictObject({
+    kind: z.literal('reboot'), ...span, ...vehicle,
+    memory: z.enum(['lost', 'kept']).default('lost'),
+  }),
   z.strictObject({
     kind: z.literal('current'), ...span,
-    set: quantity('angle', { min: -2 * Math.PI, max: 2 * Math.PI }).optional(), drift: optional(speed),
+    set: optional(heading), drift: optional(speed),
     eddy: z.strictObject(eddyKeys).optional(),
   }),
 ]);

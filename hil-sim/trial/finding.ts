@@ -1,7 +1,12 @@
-/** What is wrong between the keys of a trial: the key to change, and why. */
-import type { Path } from './documents.ts';
+/** What is wrong at one key of a trial, before anyone knows in which file it stands. */
+import type { Path } from './tree.ts';
 
+/** Reads as one sentence: `found`, but `allowed`. */
 export interface Finding {
   readonly path: Path;
-  readonly message: string;
+  readonly found: string;
+  /** Empty where nothing can be put in its place. */
+  readonly allowed: string;
+  /** Whether the place is that of the key, not of its value. */
+  readonly atKey?: boolean;
 }

@@ -1,7 +1,9 @@
 /** From a checked trial to what each agent is told: one mission per vehicle, in fleet order. */
 import { degFromRad, headingDegFromRad } from '../../messages/angles.ts';
 import type { Mission, SelfMessage } from '../../messages/mission.ts';
-import { SETTINGS, settingName, type Setting, type SettingKey, type Settings } from '../../messages/settings.ts';
+import {
+  SETTINGS, settingName, type Setting, type SettingKey, type Settings,
+} from '../../messages/settings.ts';
 import type { AreaMessage, LoopMessage } from '../../messages/shape.ts';
 import type { Trial } from './schema.ts';
 import { fullVehicles, type FullVehicle } from './vehicles.ts';
@@ -42,7 +44,8 @@ export function offsetsOf(trial: Trial): number[] {
 }
 
 function areaMessage(area: Trial['mission']['keepIn']): AreaMessage {
-  return { shape: 'circle', centre: { east_m: area.centre.east, north_m: area.centre.north }, radius_m: area.radius };
+  const centre = { east_m: area.centre.east, north_m: area.centre.north };
+  return { shape: 'circle', centre, radius_m: area.radius };
 }
 
 function loopMessage(loop: Trial['mission']['loop']): LoopMessage {

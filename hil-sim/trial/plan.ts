@@ -36,13 +36,21 @@ export function seaPlan(trial: Trial): SeaPlan {
   };
 }
 
+const TURN = 2 * Math.PI;
+
+/** A heading from −1 turn to 1 turn, as the same one in [0, 2π). */
+function headingRad(angleRad: number): number {
+  const wrapped = ((angleRad % TURN) + TURN) % TURN;
+  return wrapped < TURN ? wrapped : 0;
+}
+
 function vehiclePlan(vehicle: FullVehicle): VehiclePlan {
   return {
     name: vehicle.name,
     startEastM: vehicle.start.east,
     startNorthM: vehicle.start.north,
     startDepthM: vehicle.start.depth,
-    startHeadingRad: vehicle.start.heading < 0 ? vehicle.start.heading + 2 * Math.PI : vehicle.start.heading,
+    startHeadingRad: headingRad(vehicle.start.heading),
     cruiseMps: vehicle.speed.cruise,
     speedMinMps: vehicle.speed.min,
     speedMaxMps: vehicle.speed.max,

@@ -6,5 +6,5 @@ import { trialSchema, type Trial } from './schema.ts';
 const HEAD = '# A trial as it was run, every default filled in; drywake bench on this file repeats it.\n';
 
 export function resolvedYaml(trial: Trial): string {
-  return HEAD + stringify(z.encode(trialSchema, trial), { lineWidth: 0, flowCollectionPadding: true });
+  return HEAD + stringify(z.encode(trialSchema, trial), { lineWidth: 0, aliasDuplicateObjects: false });
 }

@@ -13,13 +13,17 @@ import { FLEET_MAX, NOTE_END_MAX_S } from '../../messages/frame.ts';
 import { SETTINGS, type Setting, type SettingKey } from '../../messages/settings.ts';
 import { formatQuantity } from '../../messages/units.ts';
 import { faultSchema, orderSchema } from './fault-schema.ts';
-import { quantity } from './quantity.ts';
+import { quantity, type Quantity } from './quantity.ts';
 
 const length = (min?: number, max?: number) => quantity('length', { min: min ?? -1e6, max: max ?? 1e6 });
 const positiveLength = quantity('length', { above: 0, max: 1e6 });
 const speed = quantity('speed', { min: 0, max: 50 });
-const positiveSpeed = quantity('speed', { above: 0, max: 50 });
+/** What a vehicle of this kind can do at most; the mission message has the same bounds. */
+const ownSpeed = quantity('speed', { min: 0, max: 20 });
+const positiveSpeed = quantity('speed', { above: 0, max: 20 });
 const angle = quantity('angle', { min: -2 * Math.PI, max: 2 * Math.PI });
+/** A standard deviation of an angle. */
+const spread = quantity('angle', { min: 0, max: Math.PI });
 const positiveTime = quantity('time', { above: 0, max: 1e7 });
 const share = quantity('share', { min: 0, max: 1 });
 const power = quantity('power', { min: 0, max: 1e5 });
@@ -35,7 +39,7 @@ const missionSchema = z.strictObject({
   spacing: z
     .union([z.literal('even'), z.array(z.number().min(0).lt(1)).min(1).max(FLEET_MAX)])
     .default('even')
-    .describe('even by arc, or offsets in turns, one per vehicle'),
+    .describe('even, or a list of offsets in turns, 0 up to 1, one per vehicle'),
   depth: length(0, 6000).prefault('40 m').describe('depth of the loop'),
   sharing: z.enum(['notes', 'solo']).default('notes'),
   keepIn: circle,
@@ -53,11 +57,11 @@ const missionSchema = z.strictObject({
 
 const vehicleParts = {
   speed: z.strictObject({
-    cruise: positiveSpeed, min: speed, max: positiveSpeed,
+    cruise: positiveSpeed, min: ownSpeed, max: positiveSpeed,
     lag: quantity('time', { min: 0, max: 600 }),
   }),
   turnRate: quantity('angleRate', { above: 0, max: Math.PI }),
-  climb: positiveSpeed,
+  climb: quantity('speed', { above: 0, max: 10 }),
   battery: quantity('energy', { above: 0, max: 1e10 }),
   power: z.strictObject({ hotel: power, cruise: power }),
   clock: z.strictObject({
@@ -66,13 +70,13 @@ const vehicleParts = {
   }),
   fix: z.strictObject({
     from: z.enum(['baseline', 'surface']),
-    every: positiveTime,
+    every: quantity('time', { above: 0, max: 1e6 }),
     sigma: quantity('length', { above: 0, max: 1e4 }),
     latency: quantity('time', { min: 0, max: 60 }),
     outlier: z.strictObject({ share, sigma: positiveLength }),
   }),
   compass: z.strictObject({
-    bias: angle, sigma: angle,
+    bias: spread, sigma: spread,
     biasIs: angle.optional().describe('the bias itself, in place of a draw'),
   }),
   log: z.strictObject({
@@ -110,7 +114,7 @@ const eachSchema = z.strictObject({
     }).prefault({}),
   }).prefault({}),
   compass: z.strictObject({
-    bias: angle.prefault('1 deg'), sigma: angle.prefault('0.5 deg'),
+    bias: spread.prefault('1 deg'), sigma: spread.prefault('0.5 deg'),
     biasIs: vehicleParts.compass.shape.biasIs,
   }).prefault({}),
   log: z.strictObject({
@@ -171,7 +175,7 @@ const modemSchema = z.strictObject({
   bitRate: quantity('bitRate', { above: 0, max: 1e6 }).prefault('640 bit/s'),
   sourceLevel: quantity('level', { min: 0, max: 250 }).prefault('175 dB'),
   frame: quantity('size', { min: 32, max: 256 }).prefault('32 B'),
-  slot: positiveTime.prefault('4 s'),
+  slot: quantity('time', { above: 0, max: 600 }).prefault('4 s'),
   turnOn: quantity('time', { min: 0, max: 60 }).prefault('0.2 s'),
   guard: quantity('time', { min: 0, max: 60 }).prefault('0.05 s'),
   physics: z.enum(['off']).default('off'),
@@ -187,20 +191,19 @@ const modemSchema = z.strictObject({
 
 const SETTING_DIMENSION = { s: 'time', m: 'length', mps: 'speed', deg: 'angle', share: 'share' } as const;
 
-/** The default of a setting in SI: only degrees differ from the table. */
-function settingSi(setting: Setting): number {
-  return setting.unit === 'deg' ? radFromDeg(setting.default) : setting.default;
+/** A setting of the agent: the table's numbers are in message units, of which only degrees are not SI. */
+function settingSchema(setting: Setting): z.ZodType {
+  const { unit, min, max, says } = setting;
+  if (unit === 'count') return z.int().min(min).max(max).default(setting.default).describe(says);
+  const si = (value: number): number => (unit === 'deg' ? radFromDeg(value) : value);
+  const dimension = SETTING_DIMENSION[unit];
+  return quantity(dimension, { min: si(min), max: si(max) })
+    .prefault(formatQuantity(si(setting.default), dimension))
+    .describe(says);
 }
 
 const onboardShape: Record<string, z.ZodType> = {};
-for (const key of Object.keys(SETTINGS) as SettingKey[]) {
-  const setting: Setting = SETTINGS[key];
-  onboardShape[key] = setting.unit === 'count'
-    ? z.int().min(setting.min).max(setting.max).default(setting.default).describe(setting.says)
-    : quantity(SETTING_DIMENSION[setting.unit])
-        .prefault(formatQuantity(settingSi(setting), SETTING_DIMENSION[setting.unit]))
-        .describe(setting.says);
-}
+for (const key of Object.keys(SETTINGS) as SettingKey[]) onboardShape[key] = settingSchema(SETTINGS[key]);
 
 /** Every measure that a limit may name; a name ending in `Min` must be at least the value. */
 export const LIMIT_DIMENSIONS = {
@@ -211,11 +214,12 @@ export const LIMIT_DIMENSIONS = {
 
 const limitShape: Record<string, z.ZodType> = {};
 for (const [key, dimension] of Object.entries(LIMIT_DIMENSIONS)) {
-  limitShape[key] = quantity(dimension, { min: 0 }).optional();
+  limitShape[key] = quantity(dimension, dimension === 'share' && key.endsWith('Min')
+    ? { min: 0, max: 1 } : { min: 0 }).optional();
 }
 
 const limitsSchema = z.strictObject({
-  ...(limitShape as { [K in keyof typeof LIMIT_DIMENSIONS]: z.ZodOptional<z.ZodCodec<z.ZodString, z.ZodNumber>> }),
+  ...(limitShape as { [K in keyof typeof LIMIT_DIMENSIONS]: z.ZodOptional<Quantity> }),
   lateTicks: z.int().min(0).optional(),
   except: z.array(name).optional().describe('vehicles taken out of the loop measures'),
 });
@@ -223,7 +227,8 @@ const limitsSchema = z.strictObject({
 export const trialSchema = z.strictObject({
   title: z.string().min(1).max(200),
   seed: z.int().min(0).max(2 ** 32 - 1).default(1),
-  start: z.string().regex(/^\d{4}-\d\d-\d\dT\d\d:\d\d(:\d\d)?Z$/).optional().describe('absolute time of tick 0'),
+  start: z.string().regex(/^\d{4}-\d\d-\d\dT\d\d:\d\d(:\d\d)?Z$/)
+    .describe('the time of tick 0, like 2027-05-01T06:00Z').optional(),
   duration: quantity('time', { above: 0, max: NOTE_END_MAX_S }),
   tick: quantity('time', { above: 0, max: 10 }).prefault('1 s'),
   datum: z.strictObject({

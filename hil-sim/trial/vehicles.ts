@@ -8,7 +8,8 @@ export type FullVehicle = Each & Pick<Trial['fleet']['vehicles'][number], 'name'
 /** Values of `over` in place of those of `base`, group by group; absent ones leave the base. */
 function overlay<T>(base: T, over: unknown): T {
   if (over === undefined) return base;
-  if (typeof base !== 'object' || base === null || typeof over !== 'object' || over === null) return over as T;
+  const areGroups = typeof base === 'object' && base !== null && typeof over === 'object' && over !== null;
+  if (!areGroups) return over as T;
   const merged: Record<string, unknown> = { ...(base as Record<string, unknown>) };
   for (const [key, value] of Object.entries(over)) merged[key] = overlay(merged[key], value);
   return merged as T;
