@@ -66,6 +66,13 @@ const WRONG: [string, string, string[]][] = [
     'trial.yaml:6:11: mission.keepIn: reaches 4095 m from the datum, but must stay within the 4094 m '
     + 'that frames can say: move the datum or shrink the area',
   ]],
+  ['an area off the datum that reaches too far', `${changed(
+    'keepIn: { shape: circle, centre: { east: 0 m, north: 0 m }, radius: 1000 m',
+    'keepIn: { shape: circle, centre: { east: -3000 m, north: 0 m }, radius: 4000 m',
+  )}modem: { slot: 7 s }\n`, [
+    'trial.yaml:6:11: mission.keepIn: reaches 7000 m from the datum, but must stay within the 4094 m '
+    + 'that frames can say: move the datum or shrink the area',
+  ]],
   ['a line on the ground', mission('depth: 200 m'), [
     'trial.yaml:7:10: mission.depth: is 200 m, but must be above the bottom at 200 m',
   ]],
@@ -117,6 +124,9 @@ const WRONG: [string, string, string[]][] = [
   ]],
   ['a duration of half a tick', changed('duration: 10 min', 'duration: 600.5 s'), [
     'trial.yaml:2:11: duration: is 600.5 s, but must be a whole number of ticks of 1 s',
+  ]],
+  ['a duration of no tick', changed('duration: 10 min', 'duration: 1e-10 s', changed('hold: 2 min', 'hold: 1e-11 s')), [
+    'trial.yaml:2:11: duration: is 1e-10 s, but must be a whole number of ticks of 1 s',
   ]],
   ['a day that the calendar does not have', after('start: 2027-02-29T06:00Z'), [
     'trial.yaml:14:8: start: is 2027-02-29T06:00Z, but must be a day and a time that there is',

@@ -236,6 +236,11 @@ describe('files that are no trial', () => {
     ]);
   });
 
+  it('refuses keys within keys within keys, a line each', () => {
+    const text = Array.from({ length: 300 }, (_, index) => `${' '.repeat(index)}a:`).join('\n');
+    expect(folder.problems(text)).toEqual(['trial.yaml:129:130: is nested more than 64 deep, but must be flatter']);
+  });
+
   it('does not unfold aliases of aliases', () => {
     const level = (index: number): string => `- &a${index + 1} [${`*a${index}, `.repeat(6)}]`;
     const levels = Array.from({ length: 12 }, (_, index) => level(index));

@@ -126,6 +126,14 @@ describe('seaPlan', () => {
     }]);
   });
 
+  it('tells it headings from 0 up to a turn, however they are written', () => {
+    for (const heading of ['-360 deg', '360 deg', '0 deg', '-1e-16 rad', '359.99999 deg', '-0.1 deg']) {
+      const trial = folder.trial(FULL, [...sets, `fleet.vehicles.amber.start.heading=${heading}`]);
+      const { startHeadingRad } = seaPlan(trial).vehicles[0]!;
+      expect(startHeadingRad >= 0 && startHeadingRad < 2 * Math.PI).toBe(true);
+    }
+  });
+
   it('tells it the currents', () => {
     const eddy = { kind: 'eddy', centreEastM: 7, centreNorthM: 8, radiusM: 9 };
     expect(plan.currents).toEqual([
@@ -143,7 +151,10 @@ describe('seaPlan', () => {
     expect(plan.faults).toEqual([
       { kind: 'link', atS: 60, untilS: 90, from: [0], to: [0, 1], change: { loss: 0.6, delayS: 2 } },
       // 64800 deg/h is 18 deg/s.
-      { kind: 'compass', atS: 120, untilS: Infinity, vehicles: [1], how: 'drift', amount: expect.closeTo(HALF_TURN / 10, 15) as number },
+      {
+        kind: 'compass', atS: 120, untilS: Infinity, vehicles: [1], how: 'drift',
+        amount: expect.closeTo(HALF_TURN / 10, 15) as number,
+      },
       { kind: 'log', atS: 180, untilS: 240, vehicles: [0, 1], how: 'step', amount: 0.05 },
       {
         kind: 'fix', atS: 240, untilS: Infinity, vehicles: [0], upset: { how: 'outliers', share: 0.1, sigmaM: 80 },

@@ -78,6 +78,13 @@ describe('--set', () => {
     expect(folder.problems(GOOD, [setting])[0]).toBe(`--set ${setting}: ${expected}`);
   });
 
+  it('is the place of what is missing in it, though the file has it', () => {
+    const setting = 'mission.recovery={ east: 0 m }';
+    expect(folder.problems(GOOD, [setting])).toEqual([
+      `--set ${setting}: mission.recovery.north: is missing, but must be a number with a unit (m, km, cm, nmi)`,
+    ]);
+  });
+
   it('shows no more of a long one than fits, and cannot exhaust the parser', () => {
     expect(folder.problems(GOOD, [`title=${'['.repeat(1e6)}`])).toEqual([
       `--set title=${'['.repeat(113)}…: title: is nested more than 64 deep, but must be flatter`,
