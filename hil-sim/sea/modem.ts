@@ -7,7 +7,9 @@
  * the place of one still waiting. On the water a frame lasts turn-on + 8·bytes/rate; its last bit
  * arrives a travel time later, from the distance at the tick of sending. Two frames that overlap at a
  * hearer are lost to it both (`collided`); one that overlaps its own sending, or meets an agent that is
- * down, is too (`deaf`). Delay and repetition of the link come after reception, so they collide with nothing.
+ * down, is too (`deaf`). Delay and repetition of the link come after reception: a frame that is held by
+ * them collides with nothing any more. A modem hands over as many frames in a tick as a sense has room
+ * for, the rest a tick later.
  */
 import { assert } from '../../messages/assert.ts';
 import type { HeardFrame } from '../../messages/sense.ts';
@@ -20,6 +22,12 @@ import { onboardTimeS } from './sensors.ts';
 
 const SLOT_TOLERANCE_S = 1e-9;
 const PAIR_KEY = 16;
+/** Steps per second in which a modem tells when it heard. */
+const HEARD_STEPS = 1e6;
+/** Frames that a sense has room for. */
+const HANDED_OVER_MOST = 64;
+/** More than a full fleet can have on the water; reached only by a bug. */
+const ON_WATER_MOST = 4096;
 
 /** One frame on its way to one hearer. */
 interface Arrival {
@@ -33,7 +41,6 @@ interface Arrival {
   readonly heardS: number;
   readonly hex: string;
   fate: FrameFate;
-  readonly isRepeat: boolean;
 }
 
 export interface ModemState {
@@ -43,8 +50,10 @@ export interface ModemState {
   readonly waiting: (string | null)[];
   /** The last two sendings of each vehicle, begin and end: begin, end, begin, end. */
   readonly sendings: Float64Array;
-  /** In flight: at most a few per pair, since every arrival ends within travel and delay. */
-  readonly arrivals: Arrival[];
+  /** On the water: a few per pair at most, since a sender sends once a round and sound is fast. */
+  readonly onWater: Arrival[];
+  /** Received and held by the link's delay: as many as are received within the longest one. */
+  readonly held: Arrival[];
   readonly counts: { framesSent: number };
   readonly fate: LinkFate;
   readonly scratch: Float64Array;
@@ -60,7 +69,8 @@ export function startModem(plan: SeaPlan, soundMps: number): ModemState {
     links: startLinks(count * count),
     waiting: new Array<string | null>(count).fill(null),
     sendings: new Float64Array(4 * count).fill(LONG_AGO_S),
-    arrivals: [],
+    onWater: [],
+    held: [],
     counts: { framesSent: 0 },
     fate: { lost: false, garbled: false, delayS: 0, repeatAfterS: -1 },
     scratch: new Float64Array(2),
@@ -90,8 +100,13 @@ export function sendFrames(modem: ModemState, truth: Truth, tick: { draw: Draw; 
     modem.sendings.copyWithin(4 * index + 2, 4 * index, 4 * index + 2);
     modem.sendings[4 * index] = slotS;
     modem.sendings[4 * index + 1] = slotS + airS;
+    for (const arrival of modem.onWater) {
+      if (arrival.toIndex === index) deafenIfSending(modem, arrival);
+    }
     for (let hearer = 0; hearer < plan.vehicles.length; hearer++) {
-      if (hearer !== index) sendTo(modem, truth, { ...tick, slotS, from: index, to: hearer, hex, airS });
+      // Written out: spreading `tick` here costs more than the rest of the tick.
+      const sending = { draw: tick.draw, slotS, from: index, to: hearer, hex, airS };
+      if (hearer !== index) sendTo(modem, truth, sending);
     }
   }
 }
@@ -128,14 +143,14 @@ function sendTo(modem: ModemState, truth: Truth, sending: Sending): void {
     heardS: lastBitS + fate.delayS,
     hex: fate.garbled ? garble(draw, { entity, count }, sending.hex) : sending.hex,
     fate: fate.lost ? lostAs : fate.garbled ? 'garbled' : 'heard',
-    isRepeat: false,
   };
   markOverlaps(modem, arrival);
-  modem.arrivals.push(arrival);
+  deafenIfSending(modem, arrival);
+  modem.onWater.push(arrival);
   if (!fate.lost && fate.repeatAfterS >= 0) {
-    modem.arrivals.push({ ...arrival, heardS: arrival.heardS + fate.repeatAfterS, isRepeat: true });
+    modem.onWater.push({ ...arrival, heardS: arrival.heardS + fate.repeatAfterS });
   }
-  assert(modem.arrivals.length < 4096, 'frames in flight end');
+  assert(modem.onWater.length < ON_WATER_MOST, 'frames on the water arrive');
 }
 
 /** Whether the link let the frame through, so that something else may still spoil it. */
@@ -143,12 +158,17 @@ function isThere(arrival: Arrival): boolean {
   return arrival.fate !== 'lost' && arrival.fate !== 'dropped-by-fault';
 }
 
+/** Whether its bits, right or wrong, get to the hearer. */
+function reaches(arrival: Arrival): boolean {
+  return arrival.fate === 'heard' || arrival.fate === 'garbled';
+}
+
 function overlaps(a: Arrival, b: Arrival): boolean {
   return a.firstBitS < b.lastBitS && b.firstBitS < a.lastBitS;
 }
 
 function markOverlaps(modem: ModemState, arrival: Arrival): void {
-  for (const other of modem.arrivals) {
+  for (const other of modem.onWater) {
     if (other.toIndex !== arrival.toIndex || other.fromIndex === arrival.fromIndex) continue;
     if (!overlaps(other, arrival)) continue;
     if (isThere(other)) other.fate = 'collided';
@@ -156,13 +176,14 @@ function markOverlaps(modem: ModemState, arrival: Arrival): void {
   }
 }
 
-/** Whether the hearer was itself sending while the frame arrived. */
-function wasSending(modem: ModemState, arrival: Arrival): boolean {
+/** A modem that sends hears nothing; a frame that has collided stays `collided`. */
+function deafenIfSending(modem: ModemState, arrival: Arrival): void {
+  if (!reaches(arrival)) return;
   for (let last = 0; last < 2; last++) {
     const at = 4 * arrival.toIndex + 2 * last;
-    if (modem.sendings[at]! < arrival.lastBitS && arrival.firstBitS < modem.sendings[at + 1]!) return true;
+    const isSending = modem.sendings[at]! < arrival.lastBitS && arrival.firstBitS < modem.sendings[at + 1]!;
+    if (isSending) arrival.fate = 'deaf';
   }
-  return false;
 }
 
 /** A frame in an agent's hands, and the hearing that stands for it until the agent says what it was. */
@@ -172,40 +193,55 @@ export interface Delivery {
   readonly hearing: Hearing;
 }
 
+/** Moves what is over by `timeS` from one list to the end of another, in order; what is not stays. */
+function moveOver(from: Arrival[], to: Arrival[], isOver: (arrival: Arrival) => boolean): void {
+  let kept = 0;
+  for (const arrival of from) {
+    if (isOver(arrival)) to.push(arrival);
+    else from[kept++] = arrival;
+  }
+  from.length = kept;
+}
+
+/** What a tick's end needs of the rest of the sea, and where it puts what ended. */
+interface TickEnd {
+  readonly deliveries: Delivery[];
+  readonly hearings: Hearing[];
+  readonly isDown: (index: number) => boolean;
+}
+
 /**
  * Ends every arrival whose time has come by `timeS`: what reached an agent goes to `deliveries`, in
  * order of time, sender and hearer; what did not becomes a hearing at once.
  */
-export function endArrivals(
-  modem: ModemState, timeS: number,
-  into: { deliveries: Delivery[]; hearings: Hearing[]; isDown: (index: number) => boolean },
-): void {
-  const ended = modem.arrivals.filter((arrival) => arrival.heardS <= timeS);
-  if (ended.length === 0) return;
-  let kept = 0;
-  for (const arrival of modem.arrivals) {
-    if (arrival.heardS > timeS) modem.arrivals[kept++] = arrival;
-  }
-  modem.arrivals.length = kept;
+export function endArrivals(modem: ModemState, timeS: number, into: TickEnd): void {
+  if (modem.onWater.length > 0) moveOver(modem.onWater, modem.held, (arrival) => arrival.lastBitS <= timeS);
+  if (modem.held.length === 0) return;
+  const ended: Arrival[] = [];
+  moveOver(modem.held, ended, (arrival) => arrival.heardS <= timeS);
   ended.sort((a, b) => a.heardS - b.heardS || a.fromIndex - b.fromIndex || a.toIndex - b.toIndex);
+  const handedOver = new Uint8Array(modem.plan.vehicles.length);
   for (const arrival of ended) {
-    const isDeaf = into.isDown(arrival.toIndex) || wasSending(modem, arrival);
-    if (isThere(arrival) && arrival.fate !== 'collided' && isDeaf) arrival.fate = 'deaf';
-    const reaches = arrival.fate === 'heard' || arrival.fate === 'garbled';
-    const hearing: Hearing = {
-      sentS: arrival.sentS,
-      heardS: reaches ? arrival.heardS : null,
-      fromIndex: arrival.fromIndex,
-      toIndex: arrival.toIndex,
-      bytes: arrival.hex.length / 2,
-      fate: arrival.fate,
-    };
-    if (!reaches) {
-      into.hearings.push(hearing);
-      continue;
+    if (reaches(arrival) && into.isDown(arrival.toIndex)) arrival.fate = 'deaf';
+    if (!reaches(arrival)) into.hearings.push(hearingOf(arrival, null));
+    else if (handedOver[arrival.toIndex]! >= HANDED_OVER_MOST) modem.held.push(arrival);
+    else {
+      handedOver[arrival.toIndex]! += 1;
+      into.deliveries.push(deliveryOf(modem.plan.vehicles[arrival.toIndex]!, arrival));
     }
-    const hearer = modem.plan.vehicles[arrival.toIndex]!;
-    const frame = { at_s: Math.round(onboardTimeS(hearer, arrival.heardS) * 1e6) / 1e6, bytes: arrival.hex };
-    into.deliveries.push({ toIndex: arrival.toIndex, frame, hearing });
   }
+}
+
+function hearingOf(arrival: Arrival, heardS: number | null): Hearing {
+  const { sentS, fromIndex, toIndex, hex, fate } = arrival;
+  return { sentS, heardS, fromIndex, toIndex, bytes: hex.length / 2, fate };
+}
+
+function deliveryOf(hearer: VehiclePlan, arrival: Arrival): Delivery {
+  const atS = Math.round(onboardTimeS(hearer, arrival.heardS) * HEARD_STEPS) / HEARD_STEPS + 0;
+  return {
+    toIndex: arrival.toIndex,
+    frame: { at_s: atS, bytes: arrival.hex },
+    hearing: hearingOf(arrival, arrival.heardS),
+  };
 }
