@@ -5,8 +5,8 @@
  * it, so the true heading carries the compass bias and the true speed the log's scale.
  *
  * Within a tick it turns evenly, and its way through the water is the exact integral of that; the current
- * is that at the middle of the way, an error of third order in the tick's length (a tick of
- * 1 s in an eddy of 500 m: below a tenth of a millimetre an hour).
+ * is that at the middle of the way, an error of third order in the tick's length: after 400 ticks with turns
+ * in eddy, tide and shear below 0.5 mm at ticks of 1 s and 5 cm at 10 s.
  */
 import { radFromDeg } from '../../messages/angles.ts';
 import type { Steer } from '../../messages/steer.ts';
