@@ -50,4 +50,38 @@ describe('uniform and normalPair', () => {
     expect(Math.abs(product / count)).toBeLessThan(error);
     expect(Math.abs(cross / count)).toBeLessThan(error);
   });
+
+  it('fill the unit interval evenly: chi-square of 256 cells below its 99.9 % point, 330.52 (255 degrees; handbook tables)', () => {
+    const draw = startDraw(77);
+    for (const lane of [0, 1, 2, 3]) {
+      const cells = new Float64Array(256);
+      let [least, most] = [1, 0];
+      for (let count = 0; count < 25_600; count++) {
+        const value = uniform(draw, { entity: 2, purpose: PURPOSE.linkLoss, count }, lane);
+        least = Math.min(least, value);
+        most = Math.max(most, value);
+        cells[Math.floor(256 * value)]! += 1;
+      }
+      expect(least > 0 && most < 1).toBe(true);
+      expect(cells.reduce((sum, cell) => sum + (cell - 100) ** 2 / 100, 0)).toBeLessThan(330.52);
+    }
+  });
+
+  it('are independent between seeds, entities, purposes and lanes: no correlation beyond five standard errors', () => {
+    const count = 10_000;
+    const stream = (seed: number, entity: number, purpose: 1 | 2 | 8, lane: number): number[] => {
+      const draw = startDraw(seed);
+      return Array.from({ length: count }, (_none, at) => uniform(draw, { entity, purpose, count: at }, lane) - 0.5);
+    };
+    const streams = [
+      stream(1, 0, 1, 0), stream(2, 0, 1, 0), stream(1, 1, 1, 0), stream(1, 0, 2, 0), stream(1, 0, 8, 0), stream(1, 0, 1, 1),
+      stream(4_294_967_295, 0, 1, 0), stream(1, 16, 8, 0), stream(1, 0, 1, 3),
+    ];
+    for (let a = 0; a < streams.length; a++) {
+      for (let b = 0; b < a; b++) {
+        const product = streams[a]!.reduce((sum, value, at) => sum + value * streams[b]![at]!, 0) / count;
+        expect(Math.abs(product * 12)).toBeLessThan(5 / Math.sqrt(count));
+      }
+    }
+  });
 });
