@@ -191,7 +191,15 @@ describe('any run', () => {
   it('hears nothing before its last bit can be there, and nothing of itself; every frame ends once per hearer, a repeat twice', () => {
     fc.assert(fc.property(links, fleet, fc.nat(1_000_000), (link, vehicles, seed) => {
       const sea = startSea(fleetPlan(vehicles, { link }, { seed }));
-      const hearings = runSea(sea, 500, ({ tick }) => ({ ...still, say: tick < 380 ? FRAME : null }));
+      const hearings = runSea(sea, 500, ({ tick, heard }, index) => {
+        for (const { at_s } of heard) {
+          // In the first tick at or after its arrival, to the microsecond that the modem tells.
+          const arrivedS = at_s - vehicles[index]!.clockOffsetS;
+          expect(arrivedS).toBeLessThanOrEqual(tick + 1e-6);
+          expect(arrivedS).toBeGreaterThan(tick - 1 - 1e-6);
+        }
+        return { ...still, say: tick < 380 ? FRAME : null };
+      });
       const ends = new Map<string, number>();
       for (const { sentS, heardS, fromIndex, toIndex, fate } of hearings) {
         const key = `${sentS} ${fromIndex} ${toIndex}`;

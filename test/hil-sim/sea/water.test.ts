@@ -63,6 +63,10 @@ describe('currentAt', () => {
     const shear: CurrentPlan = { kind: 'shear', bearingRad: 0, gradientPerS: 1e-4 };
     expect(at(shear, 0, 500)).toEqual([0, 0]);
     expect(at(shear, 1000, 500)).toEqual([0, expect.closeTo(0.1, 12)]);
+    // Toward the east, its right is the south; toward 300°, a place 1000 m on bearing 030 of the datum is to its right.
+    expect(at({ ...shear, bearingRad: rad(90) }, 300, -1000)).toEqual([expect.closeTo(0.1, 12), expect.closeTo(0, 12)]);
+    const aslant = at({ ...shear, bearingRad: rad(300) }, 500, 866.025404);
+    expect(aslant).toEqual([expect.closeTo(-0.0866025404, 9), expect.closeTo(0.05, 9)]);
   });
 
   it('adds the currents of faults for their span, and only then', () => {
