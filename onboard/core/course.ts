@@ -56,7 +56,9 @@ export function orderForGround(
   const north = wanted.groundMps * Math.cos(courseRad) - current.northMps;
   const needMps = Math.sqrt(east * east + north * north);
   out.speedMps = Math.min(wanted.maxMps, Math.max(wanted.minMps, needMps));
-  out.headingRad = wrapRad(headingForCourse(courseRad, out.speedMps, current));
+  // Within the range the needed way through the water is the answer; outside it the course comes first.
+  const isExact = out.speedMps === needMps && needMps > 0;
+  out.headingRad = wrapRad(isExact ? Math.atan2(east, north) : headingForCourse(courseRad, out.speedMps, current));
   out.overpowered = Math.abs(across(courseRad, current)) >= out.speedMps
     || groundSpeedMps(courseRad, wanted.maxMps, current) <= 0;
 }
